@@ -1,0 +1,83 @@
+package main
+
+import (
+	"fmt"
+
+	"github.com/urfave/cli/v2"
+
+	"knell/internal/event"
+	"knell/internal/report"
+)
+
+func weighCommand() *cli.Command {
+	return &cli.Command{
+		Name:      "weigh",
+		Usage:     "compute the evidence of each hypothesis about one event and their ratios",
+		ArgsUsage: "[EVENT.toml]",
+		Description: "Without a file the embedded demo event is weighed. Results go into a directory;\n" +
+			"the table goes to standard output, progress to standard error.",
+		Flags: append(inputFlags(),
+			&cli.StringFlag{Name: "out", Usage: "the result `DIRECTORY`; default: a new one under weighed/"},
+			&cli.BoolFlag{Name: "replace", Usage: "let --out hold an earlier result, which is overwritten"},
+			&cli.IntFlag{Name: "workers", Usage: "likelihoods computed at once, default one per core; the result does not depend on it"},
+			&cli.BoolFlag{Name: "quiet", Usage: "no progress"},
+			jsonFlag()),
+		Action: weigh,
+	}
+}
+
+func weigh(c *cli.Context) error {
+	if done, err := listsDemos(c); done {
+		return err
+	}
+	if c.Int("workers") < 0 {
+		return &usageError{"--workers must be 0 (one per core) or more"}
+	}
+	config, err := readConfig(c, false)
+	if err != nil {
+		return err
+	}
+	prepared, err := event.Load(config)
+	if err != nil {
+		return err
+	}
+	// Claimed before the work, so that an unwritable place costs no run.
+	directory, err := report.ClaimDirectory(c.String("out"), config.Slug(), c.Bool("replace"))
+	if err != nil {
+		return &usageError{err.Error()}
+	}
+	options := event.Options{Version: c.App.Version, Workers: c.Int("workers")}
+	if !c.Bool("quiet") {
+		meter := report.NewMeter(c.App.ErrWriter)
+		defer meter.Close()
+		options.Progress = func(p event.Progress) {
+			meter.Update(report.Progress{
+				Label: p.Hypothesis, Index: p.Index, Count: p.Count,
+				LogEvidence: p.LogEvidence, LogEvidenceError: p.LogEvidenceError,
+				Calls: p.Calls, Fraction: p.Fraction,
+			})
+		}
+	}
+	result, posteriors, err := prepared.Weigh(c.Context, options)
+	if err != nil {
+		return err
+	}
+	if err := report.WriteDirectory(directory, result, posteriors, config.AsRun()); err != nil {
+		return err
+	}
+	if c.Bool("json") {
+		err = printJSON(c, result)
+	} else {
+		err = report.Table(c.App.Writer, result)
+		if err == nil {
+			_, err = fmt.Fprintf(c.App.Writer, "\nwritten to %s\n", directory)
+		}
+	}
+	if err != nil {
+		return err
+	}
+	if result.Partial && c.Context.Err() != nil {
+		return errInterrupted
+	}
+	return nil
+}

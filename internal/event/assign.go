@@ -1,0 +1,119 @@
+package event
+
+import (
+	"errors"
+	"fmt"
+	"math"
+	"strings"
+
+	"knell/models"
+	"knell/priors"
+)
+
+// assign gives every parameter of a hypothesis its prior. In order: the
+// hypothesis's own, the shared one, each by the full name and then by the family
+// ("amplitude" for every amplitude_220); else a whole circle for a periodic
+// parameter; else the model's default as a fixed value; else it is an error.
+func (d *decoder) assign(h *Hypothesis, t *table, c *Config, shared, own map[string]NamedPrior, used map[string]bool) {
+	list, err := models.Describe(modelSettings(*h, c))
+	if err != nil {
+		d.setting(err, t.path)
+		return
+	}
+	h.Priors = map[string]NamedPrior{}
+	taken := map[string]bool{}
+	for _, p := range list {
+		family := familyOf(p.Name)
+		prior, found := NamedPrior{}, false
+		for _, from := range []map[string]NamedPrior{own, shared} {
+			for _, name := range []string{p.Name, family} {
+				if candidate, ok := from[name]; ok && !found {
+					prior, found = candidate, true
+					taken[candidate.Key] = true
+					used[name] = used[name] || candidate.Key == "prior."+name
+				}
+			}
+		}
+		switch {
+		case found:
+			low, high := prior.Prior.Support()
+			if low < p.Low || high > p.High {
+				d.fail(prior.Key, fmt.Sprintf("%v", prior.Prior), fmt.Sprintf("a range within %g to %g for %s of the model %s", p.Low, p.High, p.Name, h.Model))
+				return
+			}
+		case p.Periodic:
+			uniform, err := priors.NewUniform(p.Low, p.High)
+			if err != nil {
+				panic("event: " + err.Error())
+			}
+			prior = NamedPrior{uniform, t.path}
+		case p.HasDefault:
+			fixed, err := priors.NewFixed(p.Default)
+			if err != nil {
+				panic("event: " + err.Error())
+			}
+			prior = NamedPrior{fixed, t.path}
+		default:
+			d.fail("prior."+p.Name, "nothing", fmt.Sprintf("a prior for %s (%s), which hypothesis %q needs", p.Name, p.Note, h.Name))
+			return
+		}
+		h.Priors[p.Name] = prior
+	}
+	for _, name := range sortedKeys(own) {
+		if !taken[own[name].Key] {
+			d.fail(own[name].Key, "a prior", "a parameter of the model "+h.Model+": "+names(list))
+			return
+		}
+	}
+}
+
+// familyOf is the key that stands for every parameter of a kind: a prior on
+// "amplitude" serves each amplitude_LMN.
+func familyOf(name string) string {
+	for _, family := range []string{"amplitude", "phase"} {
+		if strings.HasPrefix(name, family+"_") {
+			return family
+		}
+	}
+	return name
+}
+
+// setting turns a model's complaint into one that names the key.
+func (d *decoder) setting(err error, path string) {
+	var s *models.SettingError
+	if errors.As(err, &s) {
+		d.fail(path+"."+s.Key, s.Got, s.Want)
+		return
+	}
+	d.fail(path, err.Error(), "")
+}
+
+func names(list []models.Parameter) string {
+	out := make([]string, len(list))
+	for i, p := range list {
+		out[i] = p.Name
+	}
+	return strings.Join(out, ", ")
+}
+
+// modelSettings is a hypothesis's model for the event's data.
+func modelSettings(h Hypothesis, c *Config) models.Settings {
+	a := c.Analysis
+	return models.Settings{
+		Model: h.Model, Modes: h.Modes, Reflectivity: h.Reflectivity, Parity: h.Parity,
+		Grid: a.grid(), Inclination: c.Event.Inclination, Start: a.Start, Length: a.Duration - a.Gate,
+	}
+}
+
+// grid is the analysed band of the segment's frequencies.
+func (a Analysis) grid() models.Grid {
+	first := int(math.Ceil(a.Low*a.Duration - 1e-9))
+	last := int(math.Floor(a.High*a.Duration + 1e-9))
+	return models.Grid{First: max(1, first), Count: last - max(1, first) + 1, Step: 1 / a.Duration}
+}
+
+// gateSamples is the gate's length in samples.
+func (a Analysis) gateSamples() int { return int(math.Round(a.Gate * a.SampleRate)) }
+
+// samples is the segment's length.
+func (a Analysis) samples() int { return int(math.Round(a.Duration * a.SampleRate)) }

@@ -1,0 +1,101 @@
+package event
+
+import (
+	"fmt"
+	"math"
+
+	"knell/likelihood"
+	"knell/models"
+	"knell/priors"
+	"knell/sampler"
+)
+
+// hypothesis is a model with its priors, ready to be compared with data.
+type hypothesis struct {
+	Hypothesis
+	model      models.Model
+	set        *priors.Set
+	likelihood *likelihood.Gaussian
+	periodic   []bool // by free parameter
+}
+
+// newHypothesis builds the model and orders the priors as the model's
+// parameters are.
+func newHypothesis(h Hypothesis, c *Config, g *likelihood.Gaussian) (*hypothesis, error) {
+	model, err := models.New(modelSettings(h, c))
+	if err != nil {
+		return nil, fmt.Errorf("hypothesis %s: %w", h.Name, err)
+	}
+	var names []string
+	var list []priors.Prior
+	for _, p := range model.Parameters() {
+		names = append(names, p.Name)
+		list = append(list, h.Priors[p.Name].Prior)
+	}
+	set, err := priors.NewSet(names, list)
+	if err != nil {
+		return nil, fmt.Errorf("hypothesis %s: %w", h.Name, err)
+	}
+	if set.Dim() == 0 {
+		return nil, &InputError{File: c.File, Line: c.lines.line("prior"), Key: "hypothesis " + h.Name, Got: "no free parameter", Want: "at least one prior that is not fixed"}
+	}
+	out := &hypothesis{Hypothesis: h, model: model, set: set, likelihood: g}
+	for i, p := range model.Parameters() {
+		low, high := list[i].Support()
+		if low == high {
+			continue
+		}
+		out.periodic = append(out.periodic, p.Periodic && isFullCircle(list[i], p))
+	}
+	return out, nil
+}
+
+// isFullCircle says whether the prior treats the ends of a periodic parameter as
+// one place: a constant density over the whole of it.
+func isFullCircle(p priors.Prior, of models.Parameter) bool {
+	low, high := p.Support()
+	if low != of.Low || high != of.High {
+		return false
+	}
+	density := p.LogDensity(low + 0.1*(high-low))
+	return math.Abs(p.LogDensity(low+0.6*(high-low))-density) < 1e-12 && math.Abs(p.LogDensity(low+0.9*(high-low))-density) < 1e-12
+}
+
+// target is a hypothesis as the sampler sees it, for one goroutine.
+type target struct {
+	set    *priors.Set
+	model  models.Model
+	worker *likelihood.Worker
+	theta  []float64
+	h      *models.Polarizations
+}
+
+var _ sampler.Target = (*target)(nil)
+
+func (h *hypothesis) newTarget() (sampler.Target, error) { return h.target(), nil }
+
+func (h *hypothesis) target() *target {
+	return &target{
+		set:    h.set,
+		model:  h.model.Clone(),
+		worker: h.likelihood.Worker(),
+		theta:  make([]float64, len(h.model.Parameters())),
+		h:      models.NewPolarizations(h.likelihood.Grid().Count),
+	}
+}
+
+// Dim implements sampler.Target.
+func (t *target) Dim() int { return t.set.Dim() }
+
+// LogLikelihood implements sampler.Target: ln L over noise alone, in nats.
+func (t *target) LogLikelihood(u []float64) (float64, error) {
+	t.set.Map(u, t.theta)
+	return t.at(t.theta)
+}
+
+func (t *target) at(theta []float64) (float64, error) {
+	if err := t.model.Fill(theta, t.h); err != nil {
+		return 0, err
+	}
+	return t.worker.LogRatio(t.h), nil
+}

@@ -1,0 +1,102 @@
+package event
+
+import (
+	"math"
+	"sort"
+
+	"gonum.org/v1/gonum/stat"
+
+	"knell/internal/report"
+	"knell/models"
+	"knell/sampler"
+)
+
+// summarise turns a sampler's outcome into the report's entry and the
+// posterior file's columns: every parameter in its physical unit, the derived
+// quantities, the log-likelihood over noise and absolute.
+func (p *Prepared) summarise(h *hypothesis, o *sampler.Outcome) (report.Hypothesis, report.Posterior, error) {
+	entry := report.Hypothesis{
+		Name: h.Name, Model: h.Model, Dimensions: h.set.Dim(),
+		LogEvidence:          o.LogEvidence + p.likelihood.LogNoise(),
+		LogEvidenceError:     o.LogEvidenceError,
+		LogEvidenceOverNoise: o.LogEvidence,
+		Calls:                o.Calls, LivePoints: o.LivePoints,
+		Information: o.Information, EffectiveSamples: o.EffectiveSamples,
+		InsertionRankP: o.InsertionRankP,
+		Status:         o.Status.String(), Partial: o.Partial,
+		Verdict: o.Verdict, Warnings: o.Warnings,
+		MaxLogLikelihoodOverNoise: math.Inf(-1),
+	}
+	for _, l := range o.LogLikelihood {
+		entry.MaxLogLikelihoodOverNoise = max(entry.MaxLogLikelihoodOverNoise, l)
+	}
+
+	columns := append(append([]models.Parameter(nil), h.model.Parameters()...), h.model.Derived()...)
+	weighted := newColumns(len(columns), len(o.Points))
+	theta := make([]float64, len(h.model.Parameters()))
+	derived := make([]float64, len(h.model.Derived()))
+	for i, u := range o.Points {
+		h.set.Map(u, theta)
+		if err := h.model.Derive(theta, derived); err != nil {
+			return entry, report.Posterior{}, err
+		}
+		for j, v := range theta {
+			weighted[j][i] = v
+		}
+		for j, v := range derived {
+			weighted[len(theta)+j][i] = v
+		}
+	}
+	weights := make([]float64, len(o.LogWeight))
+	for i, l := range o.LogWeight {
+		weights[i] = math.Exp(l)
+	}
+	for j, c := range columns {
+		q := weightedQuantiles(weighted[j], weights, 0.05, 0.5, 0.95)
+		entry.Summary = append(entry.Summary, report.Summary{Parameter: c.Name, Unit: c.Unit, Low90: q[0], Median: q[1], High90: q[2]})
+	}
+
+	chosen := o.EqualWeight(p.Config.Seed)
+	posterior := report.Posterior{Name: h.Name, Values: newColumns(len(columns)+2, len(chosen))}
+	for j, c := range columns {
+		posterior.Columns = append(posterior.Columns, c.Name)
+		posterior.Units = append(posterior.Units, c.Unit)
+		for k, i := range chosen {
+			posterior.Values[j][k] = weighted[j][i]
+		}
+	}
+	posterior.Columns = append(posterior.Columns, "log_likelihood_over_noise", "log_likelihood")
+	posterior.Units = append(posterior.Units, "nat", "nat")
+	for k, i := range chosen {
+		posterior.Values[len(columns)][k] = o.LogLikelihood[i]
+		posterior.Values[len(columns)+1][k] = o.LogLikelihood[i] + p.likelihood.LogNoise()
+	}
+	return entry, posterior, nil
+}
+
+func newColumns(n, length int) [][]float64 {
+	columns := make([][]float64, n)
+	for i := range columns {
+		columns[i] = make([]float64, length)
+	}
+	return columns
+}
+
+// weightedQuantiles returns the quantiles of x under the weights, which need not
+// be normalised.
+func weightedQuantiles(x, weights []float64, levels ...float64) []float64 {
+	order := make([]int, len(x))
+	for i := range order {
+		order[i] = i
+	}
+	sort.Slice(order, func(a, b int) bool { return x[order[a]] < x[order[b]] })
+	sortedX, sortedW := make([]float64, len(x)), make([]float64, len(x))
+	for i, k := range order {
+		sortedX[i], sortedW[i] = x[k], weights[k]
+	}
+	out := make([]float64, len(levels))
+	for i, level := range levels {
+		out[i] = stat.Quantile(level, stat.Empirical, sortedX, sortedW)
+	}
+	return out
+}

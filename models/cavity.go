@@ -1,0 +1,276 @@
+package models
+
+import (
+	"fmt"
+	"math"
+	"math/bits"
+	"strconv"
+	"strings"
+
+	"knell/internal/constants"
+	"knell/models/kerr"
+)
+
+// Cavity is the remnant with a partially reflecting surface: the ringdown's
+// spectrum times the finite echo sum
+//
+//	1 + q + ... + q^N,   q(omega) = R(omega) Rs(k) exp(-2 i k x0),
+//
+// with R the barrier's reflection for waves from the horizon side, Rs the
+// surface's reflectivity with its phase, x0 the surface's tortoise coordinate
+// (below zero) and k = omega - m Omega_H. N is the number of echoes that arrive
+// within the data: the closed form 1 / (1 - q) would wrap later ones around the
+// segment and hide the ergoregion instability, |q| > 1.
+//
+// The mode's resonance takes the sum at omega = 2 pi f > 0 and its tail the sum
+// at omega < 0, which is the conjugate of that for m = -2 at -omega; the signal
+// is real either way.
+//
+// Only l = m = 2 modes: the barrier is tabulated for them. Beyond the table's
+// reach |R| < 1e-8 and the sum is 1.
+//
+// Parameters: mass, spin, start_time, amplitude and phase of each mode, offset,
+// echo_phase, then those of the reflectivity law.
+type Cavity struct {
+	grid          Grid
+	start, length float64
+	ringing       *ringing
+	law           reflectivity
+	parity        kerr.Parity
+	parameters    []Parameter
+
+	barrier        *kerr.Barrier
+	rs             []float64 // surface reflectivity
+	rRe, rIm       []float64 // barrier reflection
+	eRe, eIm       []float64 // echo sum at +omega
+	tRe, tIm       []float64 // echo sum at -omega
+	offsetIndex    int
+	echoPhaseIndex int
+}
+
+var _ Model = (*Cavity)(nil)
+
+func describeCavity(s Settings) ([]Parameter, error) {
+	if s.Reflectivity == "" {
+		return nil, &SettingError{"reflectivity", "nothing", "a law of the surface, one of " + strings.Join(ReflectivityNames(), ", ")}
+	}
+	law, err := findReflectivity(s.Reflectivity)
+	if err != nil {
+		return nil, err
+	}
+	if _, err := parseParity(s.Parity); err != nil {
+		return nil, err
+	}
+	labels, err := parseModes(s.Modes)
+	if err != nil {
+		return nil, err
+	}
+	for _, label := range labels {
+		if label.l != 2 || label.m != 2 {
+			return nil, &SettingError{"modes", fmt.Sprintf(`"%d,%d,%d"`, label.l, label.m, label.n), "l = m = 2: the barrier of a cavity is tabulated for that"}
+		}
+	}
+	list := append(remnantParameters(s), modeParameters(labels)...)
+	list = append(list,
+		Parameter{Name: "offset", Note: "log10 of the surface's proper distance from the would-be horizon in Planck lengths", Low: -40, High: 34},
+		Parameter{Name: "echo_phase", Unit: "rad", Note: "phase of the surface's reflectivity", Low: 0, High: 2 * math.Pi, Periodic: true})
+	return append(list, law.parameters...), nil
+}
+
+func parseParity(name string) (kerr.Parity, error) {
+	switch name {
+	case "", "odd":
+		return kerr.Odd, nil
+	case "even":
+		return kerr.Even, nil
+	}
+	return kerr.Odd, &SettingError{"parity", strconv.Quote(name), `"odd" or "even"`}
+}
+
+func newCavity(s Settings) (Model, error) {
+	parameters, err := describeCavity(s)
+	if err != nil {
+		return nil, err
+	}
+	if !(s.Length > 0) {
+		panic(fmt.Sprintf("models: %g s of data after the analysis start", s.Length))
+	}
+	law, err := findReflectivity(s.Reflectivity)
+	if err != nil {
+		return nil, err
+	}
+	parity, err := parseParity(s.Parity)
+	if err != nil {
+		return nil, err
+	}
+	ringing, err := newRinging(s.Modes, s.Inclination)
+	if err != nil {
+		return nil, err
+	}
+	c := &Cavity{
+		grid: s.Grid, start: s.Start, length: s.Length,
+		ringing: ringing, law: law, parity: parity, parameters: parameters,
+		offsetIndex: 3 + 2*len(ringing.tracks), echoPhaseIndex: 4 + 2*len(ringing.tracks),
+	}
+	return c.prepared()
+}
+
+// prepared gives c scratch space of its own.
+func (c *Cavity) prepared() (*Cavity, error) {
+	barrier, err := kerr.NewBarrier(c.parity)
+	if err != nil {
+		return nil, err
+	}
+	n := c.grid.Count
+	c.barrier = barrier
+	c.rs, c.rRe, c.rIm = make([]float64, n), make([]float64, n), make([]float64, n)
+	c.eRe, c.eIm = make([]float64, n), make([]float64, n)
+	c.tRe, c.tIm = make([]float64, n), make([]float64, n)
+	return c, nil
+}
+
+// Parameters implements Model.
+func (c *Cavity) Parameters() []Parameter { return c.parameters }
+
+// Derived implements Model.
+func (c *Cavity) Derived() []Parameter {
+	return append(c.ringing.derived(), Parameter{Name: "echo_delay", Unit: "s", Note: "time between echoes"})
+}
+
+// Derive implements Model.
+func (c *Cavity) Derive(theta, out []float64) error {
+	if err := c.ringing.derive(theta[0], theta[1], out); err != nil {
+		return err
+	}
+	out[len(out)-1] = c.echoDelay(theta)
+	return nil
+}
+
+// Clone implements Model.
+func (c *Cavity) Clone() Model {
+	twin := *c
+	clone, err := twin.prepared()
+	if err != nil {
+		// The same table was loaded when c was built.
+		panic("models: " + err.Error())
+	}
+	return clone
+}
+
+// lnDistance is the logarithm of the surface's proper distance in units of M.
+func (c *Cavity) lnDistance(theta []float64) float64 {
+	return theta[c.offsetIndex]*math.Ln10 + math.Log(constants.PlanckLength/(theta[0]*constants.SolarMassMetres))
+}
+
+func (c *Cavity) echoDelay(theta []float64) float64 {
+	return kerr.EchoDelay(theta[1], c.lnDistance(theta)) * theta[0] * constants.SolarMassSeconds
+}
+
+// Fill implements Model.
+func (c *Cavity) Fill(theta []float64, h *Polarizations) error {
+	h.clear()
+	mass, spin := theta[0], theta[1]
+	late := theta[2] - c.start
+	law := theta[c.echoPhaseIndex+1:]
+	// Without reflection the signal is the ringdown's, bit for bit.
+	echoing := law[0] != 0
+	if echoing {
+		if err := c.echoes(theta, late); err != nil {
+			return err
+		}
+	}
+	for i := range c.ringing.tracks {
+		w, err := c.ringing.wave(i, mass, spin, theta[3+2*i], theta[4+2*i])
+		if err != nil {
+			return err
+		}
+		if echoing {
+			h.addEchoing(w, c.grid, c.eRe, c.eIm, c.tRe, c.tIm)
+		} else {
+			h.add(w, c.grid)
+		}
+	}
+	if late != 0 {
+		h.delay(late, c.grid)
+	}
+	return nil
+}
+
+// echoes fills the echo sums at both signs of the frequency.
+func (c *Cavity) echoes(theta []float64, late float64) error {
+	mass, spin := theta[0], theta[1]
+	if err := c.barrier.SetSpin(spin); err != nil {
+		return err
+	}
+	scale := mass * constants.SolarMassSeconds
+	lnDistance := c.lnDistance(theta)
+	delay := kerr.EchoDelay(spin, lnDistance) * scale
+	terms := 1
+	if delay > 0 && c.length > late {
+		terms += int(math.Min((c.length-late)/delay, 1e6))
+	}
+	x0 := kerr.SurfaceTortoise(spin, lnDistance)
+	sin, cos := math.Sincos(theta[c.echoPhaseIndex])
+	e := echoSum{
+		shift: 2 * kerr.HorizonFrequency(spin), temperature: kerr.HawkingTemperature(spin),
+		x0: x0, terms: uint(terms), phaseCos: cos, phaseSin: sin, law: theta[c.echoPhaseIndex+1:],
+	}
+	step := 2 * math.Pi * c.grid.Step * scale
+	c.fillEchoSum(e, step, c.eRe, c.eIm)
+	c.fillEchoSum(e, -step, c.tRe, c.tIm)
+	return nil
+}
+
+// echoSum is what the sum needs to know at one point of parameter space, in
+// units of M.
+type echoSum struct {
+	shift, temperature, x0 float64
+	terms                  uint // N + 1
+	phaseCos, phaseSin     float64
+	law                    []float64
+}
+
+// fillEchoSum writes 1 + q + ... + q^N at omega_j = step (First + j).
+func (c *Cavity) fillEchoSum(e echoSum, step float64, re, im []float64) {
+	low, high := c.barrier.Reach()
+	// The bins within the barrier's reach are the first few of the grid.
+	limit := high
+	if step < 0 {
+		limit = -low
+	}
+	n := int(math.Ceil(limit/math.Abs(step))) - c.grid.First
+	n = max(0, min(n, c.grid.Count))
+	for j := n; j < len(re); j++ {
+		re[j], im[j] = 1, 0
+	}
+	if n == 0 {
+		return
+	}
+	first := step * float64(c.grid.First)
+	rRe, rIm, rs := c.rRe[:n], c.rIm[:n], c.rs[:n]
+	c.barrier.Reflection(first, step, rRe, rIm)
+	c.law.fill(e.law, e.temperature, first-e.shift, step, rs)
+	turn := newRotor(-2*e.x0*step, float64(c.grid.First)-e.shift/step)
+	re, im = re[:n], im[:n]
+	top := bits.Len(e.terms) - 2
+	for j := range re {
+		cos, sin := turn.next()
+		cos, sin = cos*e.phaseCos-sin*e.phaseSin, cos*e.phaseSin+sin*e.phaseCos
+		qr := rs[j] * (rRe[j]*cos - rIm[j]*sin)
+		qi := rs[j] * (rRe[j]*sin + rIm[j]*cos)
+		// The sum of the first s powers by doubling: sum_2s = sum_s (1 + q^s),
+		// sum_{s+1} = 1 + q sum_s. It has no singular point, unlike
+		// (1 - q^(N+1)) / (1 - q).
+		sr, si := 1.0, 0.0
+		pr, pi := qr, qi
+		for b := top; b >= 0; b-- {
+			sr, si = sr+sr*pr-si*pi, si+sr*pi+si*pr
+			pr, pi = pr*pr-pi*pi, 2*pr*pi
+			if e.terms>>b&1 == 1 {
+				sr, si = 1+sr*qr-si*qi, sr*qi+si*qr
+				pr, pi = pr*qr-pi*qi, pr*qi+pi*qr
+			}
+		}
+		re[j], im[j] = sr, si
+	}
+}

@@ -1,0 +1,24 @@
+// Package models computes the two polarisations of a remnant's signal in the
+// frequency domain, one type per hypothesis.
+//
+// The road of one call:
+//
+//  1. New builds a Model for a Grid of frequencies and a fixed viewing angle.
+//     Mode frequencies and angular factors are tabulated over spin there, so
+//     that a call never solves a continued fraction.
+//  2. Fill takes the parameters (SI and solar masses, in the order of
+//     Parameters) and writes h+ and hx at the grid's frequencies.
+//  3. Derive turns the same parameters into what an analyst quotes: frequency
+//     and damping time of each mode, echo delay.
+//
+// Conventions: fields go as exp(-i omega t), the Fourier transform is
+// h(f) = integral of h(t) exp(-2 pi i f t) dt in strain per hertz, and t = 0 is
+// the analysis start. h+ - i hx is a sum over modes of
+// C S(inclination) exp(-i omega t); the (l, -m) partner of a mode has the
+// amplitude (-1)^l times the conjugate, as for the remnant of a binary whose
+// spins do not precess. ringing.go turns that into the transform, and is the
+// only place that does.
+//
+// A Model holds scratch space and belongs to one goroutine; Clone gives the
+// next goroutine its own. Nothing here knows of data, priors or sampling.
+package models

@@ -1,0 +1,148 @@
+package models
+
+import (
+	"fmt"
+	"math"
+	"strings"
+
+	"knell/models/kerr"
+)
+
+// Grid is the set of frequencies f_j = (First + j) Step, j = 0..Count-1.
+type Grid struct {
+	First, Count int
+	Step         float64 // Hz; one over the segment's length
+}
+
+// Frequency returns f_j in Hz.
+func (g Grid) Frequency(j int) float64 { return float64(g.First+j) * g.Step }
+
+// Polarizations holds h+ and hx over a grid, in strain per hertz: four slices
+// of the grid's length.
+type Polarizations struct {
+	PlusRe, PlusIm, CrossRe, CrossIm []float64
+}
+
+// NewPolarizations returns zeroed polarisations for n frequencies.
+func NewPolarizations(n int) *Polarizations {
+	return &Polarizations{
+		PlusRe: make([]float64, n), PlusIm: make([]float64, n),
+		CrossRe: make([]float64, n), CrossIm: make([]float64, n),
+	}
+}
+
+// Parameter describes one parameter of a model, or one derived quantity.
+type Parameter struct {
+	Name string
+	Unit string // "" for a pure number
+	Note string // one line for the reader of a table
+	// Low and High bound the domain in which the model is defined; a prior must
+	// not reach beyond it.
+	Low, High float64
+	// Periodic says that Low and High are the same place.
+	Periodic bool
+	// Default, when HasDefault is set, is the value a parameter without a prior
+	// is fixed at.
+	Default    float64
+	HasDefault bool
+}
+
+// Model is one hypothesis's signal.
+type Model interface {
+	// Parameters lists the parameters in the order of theta.
+	Parameters() []Parameter
+	// Fill writes the polarisations at theta. A theta inside the domain of
+	// every parameter gives no error.
+	Fill(theta []float64, h *Polarizations) error
+	// Derived lists the derived quantities in the order of Derive.
+	Derived() []Parameter
+	// Derive writes the derived quantities at theta.
+	Derive(theta, out []float64) error
+	// Clone returns a model that another goroutine may use.
+	Clone() Model
+}
+
+// Settings says which model to build and for which data.
+type Settings struct {
+	Model        string   // one of Names()
+	Modes        []string // "l,m,n", e.g. "2,2,0"
+	Reflectivity string   // cavity only: one of ReflectivityNames()
+	Parity       string   // cavity only: "odd" (the default) or "even"
+	Grid         Grid
+	// Inclination of the remnant's spin to the line of sight, rad.
+	Inclination float64
+	// Start is the analysis start in seconds after the event time: the origin
+	// of t in the transform, and the default of the parameter start_time.
+	Start float64
+	// Length of data after the analysis start, s; echoes that would arrive
+	// later are left out.
+	Length float64
+}
+
+// SettingError says which setting is wrong, so that a caller can point to the
+// line it came from.
+type SettingError struct {
+	Key, Got, Want string
+}
+
+func (e *SettingError) Error() string {
+	return fmt.Sprintf("models: %s = %s, want %s", e.Key, e.Got, e.Want)
+}
+
+// constructors maps a model's name to what describes and what builds it. Adding
+// a model is adding its file and its line here.
+var constructors = []struct {
+	name     string
+	describe func(Settings) ([]Parameter, error)
+	build    func(Settings) (Model, error)
+}{
+	{"ringdown", describeRingdown, newRingdown},
+	{"cavity", describeCavity, newCavity},
+}
+
+// Names lists the models New knows.
+func Names() []string {
+	names := make([]string, len(constructors))
+	for i, c := range constructors {
+		names[i] = c.name
+	}
+	return names
+}
+
+// Describe checks the settings that name a model and returns its parameters,
+// without the tables that New makes and without looking at the grid. A setting
+// that a user got wrong gives a *SettingError.
+func Describe(s Settings) ([]Parameter, error) {
+	for _, c := range constructors {
+		if c.name == s.Model {
+			return c.describe(s)
+		}
+	}
+	return nil, &SettingError{"model", fmt.Sprintf("%q", s.Model), "one of " + strings.Join(Names(), ", ")}
+}
+
+// New builds the model that s names. A setting that a user got wrong gives a
+// *SettingError; a grid without frequencies is the caller's bug and panics.
+func New(s Settings) (Model, error) {
+	if s.Grid.Count < 1 || s.Grid.First < 1 || !(s.Grid.Step > 0) {
+		panic(fmt.Sprintf("models: grid of %d frequencies from bin %d in steps of %g Hz", s.Grid.Count, s.Grid.First, s.Grid.Step))
+	}
+	if _, err := Describe(s); err != nil {
+		return nil, err
+	}
+	for _, c := range constructors {
+		if c.name == s.Model {
+			return c.build(s)
+		}
+	}
+	panic("models: described but not built: " + s.Model)
+}
+
+// remnantParameters are common to every remnant model.
+func remnantParameters(s Settings) []Parameter {
+	return []Parameter{
+		{Name: "mass", Unit: "solar masses", Note: "remnant mass in the detector frame", Low: math.SmallestNonzeroFloat64, High: math.Inf(1)},
+		{Name: "spin", Note: "remnant spin, dimensionless", Low: 0, High: kerr.MaxSpin},
+		{Name: "start_time", Unit: "s", Note: "where the ringdown begins, after the event time", Low: math.Inf(-1), High: math.Inf(1), Default: s.Start, HasDefault: true},
+	}
+}

@@ -1,0 +1,72 @@
+package models
+
+import "strconv"
+
+// Ringdown is the remnant with a horizon: a sum of Kerr quasi-normal modes that
+// begin at start_time.
+//
+// Parameters: mass, spin, start_time, then amplitude and phase of each mode.
+type Ringdown struct {
+	grid       Grid
+	start      float64 // s after the event time, where t = 0 lies
+	ringing    *ringing
+	parameters []Parameter
+}
+
+var _ Model = (*Ringdown)(nil)
+
+func describeRingdown(s Settings) ([]Parameter, error) {
+	if s.Reflectivity != "" {
+		return nil, &SettingError{"reflectivity", strconv.Quote(s.Reflectivity), "no such key: a ringdown has a horizon"}
+	}
+	if s.Parity != "" {
+		return nil, &SettingError{"parity", strconv.Quote(s.Parity), "no such key: a ringdown has no cavity"}
+	}
+	labels, err := parseModes(s.Modes)
+	if err != nil {
+		return nil, err
+	}
+	return append(remnantParameters(s), modeParameters(labels)...), nil
+}
+
+func newRingdown(s Settings) (Model, error) {
+	parameters, err := describeRingdown(s)
+	if err != nil {
+		return nil, err
+	}
+	ringing, err := newRinging(s.Modes, s.Inclination)
+	if err != nil {
+		return nil, err
+	}
+	return &Ringdown{grid: s.Grid, start: s.Start, ringing: ringing, parameters: parameters}, nil
+}
+
+// Parameters implements Model.
+func (r *Ringdown) Parameters() []Parameter { return r.parameters }
+
+// Derived implements Model.
+func (r *Ringdown) Derived() []Parameter { return r.ringing.derived() }
+
+// Derive implements Model.
+func (r *Ringdown) Derive(theta, out []float64) error {
+	return r.ringing.derive(theta[0], theta[1], out)
+}
+
+// Clone implements Model. A ringdown keeps no scratch space.
+func (r *Ringdown) Clone() Model { return r }
+
+// Fill implements Model.
+func (r *Ringdown) Fill(theta []float64, h *Polarizations) error {
+	h.clear()
+	for i := range r.ringing.tracks {
+		w, err := r.ringing.wave(i, theta[0], theta[1], theta[3+2*i], theta[4+2*i])
+		if err != nil {
+			return err
+		}
+		h.add(w, r.grid)
+	}
+	if late := theta[2] - r.start; late != 0 {
+		h.delay(late, r.grid)
+	}
+	return nil
+}
