@@ -1,0 +1,178 @@
+package sampler
+
+import (
+	"math"
+	"math/rand/v2"
+
+	"gonum.org/v1/gonum/mat"
+)
+
+// ellipsoid is the set |L⁻¹(x - m)|² <= radius2, with m the mean and L Lᵀ the
+// covariance of its members. Matrices are dim×dim by rows, lower triangular.
+type ellipsoid struct {
+	mean    []float64
+	factor  []float64 // L
+	inverse []float64 // L⁻¹
+	logDet  float64   // ln det L
+	radius2 float64
+	members []int // indices of the points it was fitted to
+}
+
+// fitEllipsoid returns the mean and covariance of the given rows of the n×dim
+// points, radius2 unset. It reports false if the covariance is singular.
+func fitEllipsoid(points []float64, dim int, members []int) (ellipsoid, bool) {
+	e := ellipsoid{mean: make([]float64, dim), members: members}
+	n := float64(len(members))
+	for _, i := range members {
+		for k, x := range points[i*dim : (i+1)*dim] {
+			e.mean[k] += x
+		}
+	}
+	for k := range e.mean {
+		e.mean[k] /= n
+	}
+	cov := make([]float64, dim*dim)
+	d := make([]float64, dim)
+	for _, i := range members {
+		row := points[i*dim : (i+1)*dim]
+		for k, x := range row {
+			d[k] = x - e.mean[k]
+		}
+		for r := range dim {
+			c := cov[r*dim : r*dim+r+1]
+			for k := range c {
+				c[k] += d[r] * d[k]
+			}
+		}
+	}
+	// Scaled to unit diagonal, so that parameters known to very different
+	// precision do not lose digits.
+	scale := make([]float64, dim)
+	for r := range dim {
+		scale[r] = math.Sqrt(cov[r*dim+r] / n)
+		if !(scale[r] > 0) {
+			return e, false
+		}
+	}
+	sym := mat.NewSymDense(dim, nil)
+	for r := range dim {
+		for k := 0; k <= r; k++ {
+			sym.SetSym(r, k, cov[r*dim+k]/(n*scale[r]*scale[k]))
+		}
+	}
+	var chol mat.Cholesky
+	if !chol.Factorize(sym) || chol.Cond() > 1e13 {
+		return e, false
+	}
+	var lower, inverse mat.TriDense
+	chol.LTo(&lower)
+	if err := inverse.InverseTri(&lower); err != nil {
+		return e, false
+	}
+	e.factor = cov // reused
+	e.inverse = make([]float64, dim*dim)
+	for r := range dim {
+		for k := range dim {
+			if k > r {
+				e.factor[r*dim+k] = 0
+				continue
+			}
+			e.factor[r*dim+k] = lower.At(r, k) * scale[r]
+			e.inverse[r*dim+k] = inverse.At(r, k) / scale[k]
+		}
+		e.logDet += math.Log(e.factor[r*dim+r])
+	}
+	return e, true
+}
+
+// distance2 returns |L⁻¹(x - m)|², or some value above limit once that is sure.
+func (e *ellipsoid) distance2(x []float64, limit float64) float64 {
+	dim := len(e.mean)
+	var sum float64
+	for r := range dim {
+		row := e.inverse[r*dim : r*dim+r+1]
+		var y float64
+		for k, a := range row {
+			y += a * (x[k] - e.mean[k])
+		}
+		sum += y * y
+		if sum > limit {
+			break
+		}
+	}
+	return sum
+}
+
+func (e *ellipsoid) contains(x []float64) bool {
+	return e.distance2(x, e.radius2) <= e.radius2
+}
+
+// whiten writes L⁻¹(x - m) to y.
+func (e *ellipsoid) whiten(x, y []float64) {
+	lowerTimes(e.inverse, x, e.mean, y)
+}
+
+// stretch writes L z to v. z and v may not overlap.
+func (e *ellipsoid) stretch(z, v []float64) {
+	lowerTimes(e.factor, z, nil, v)
+}
+
+func lowerTimes(a, x, origin, y []float64) {
+	dim := len(x)
+	for r := range dim {
+		row := a[r*dim : r*dim+r+1]
+		var s float64
+		if origin == nil {
+			for k, c := range row {
+				s += c * x[k]
+			}
+		} else {
+			for k, c := range row {
+				s += c * (x[k] - origin[k])
+			}
+		}
+		y[r] = s
+	}
+}
+
+// logVolume is the log of the ellipsoid's volume in the unit cube's measure.
+func (e *ellipsoid) logVolume() float64 {
+	return logBall(len(e.mean)) + e.logDet + 0.5*float64(len(e.mean))*math.Log(e.radius2)
+}
+
+// logBall is the log of the volume of the unit ball in dim dimensions.
+func logBall(dim int) float64 {
+	half := 0.5 * float64(dim)
+	g, _ := math.Lgamma(half + 1)
+	return half*math.Log(math.Pi) - g
+}
+
+// draw writes a uniform draw from the ellipsoid to x, with z as scratch.
+func (e *ellipsoid) draw(rng *rand.Rand, x, z []float64) {
+	direction(rng, z)
+	r := math.Pow(rng.Float64(), 1/float64(len(z))) * math.Sqrt(e.radius2)
+	for k := range z {
+		z[k] *= r
+	}
+	e.stretch(z, x)
+	for k := range x {
+		x[k] += e.mean[k]
+	}
+}
+
+// direction fills z with a uniformly random unit vector.
+func direction(rng *rand.Rand, z []float64) {
+	for {
+		var sum float64
+		for k := range z {
+			z[k] = rng.NormFloat64()
+			sum += z[k] * z[k]
+		}
+		if sum > 0 {
+			for k := range z {
+				z[k] /= math.Sqrt(sum)
+			}
+			return
+		}
+	}
+}

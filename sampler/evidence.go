@@ -1,0 +1,154 @@
+package sampler
+
+import (
+	"math"
+	"sync"
+
+	"gonum.org/v1/gonum/mathext"
+	"gonum.org/v1/gonum/stat/distuv"
+
+	"knell/internal/random"
+)
+
+const (
+	realisations = 500 // simulated shrinkage histories
+	chunks       = 10  // they are spread over, whatever the number of workers
+)
+
+// weigh simulates the shrinkage of the prior volume and sets LogEvidence, its
+// error, Information, LogWeight and EffectiveSamples.
+//
+// Each history draws t_i ~ Beta(n_i, 1) for every dead point and has volumes
+// X_i = t_1 ... t_i. Point i stands for the volume between the midpoints of
+// (X_(i-1), X_i) and (X_i, X_(i+1)); the first and the last also take what is
+// outside. Points of a plateau need no rule of their own: they were removed one
+// by one with a falling live number (arXiv:2010.13884). The prior draws of zero
+// likelihood are such a plateau, whose shrinkage is one Beta draw.
+func (o *Outcome) weigh(workers int) {
+	n := len(o.LogLikelihood)
+	// In units of its expectation exp(mean_i) each X_i is of order one, so that
+	// nothing underflows however deep the run.
+	start := o.priorShrinkage()
+	down := make([]float64, n+1) // exp(-1/n_i), X_i over X_(i-1) in those units
+	scale := make([]float64, n)  // L_i X_i over the largest, in those units
+	mean, top := start.mean, math.Inf(-1)
+	for i, l := range o.LogLikelihood {
+		down[i] = math.Exp(-1 / float64(o.LiveCount[i]))
+		mean -= 1 / float64(o.LiveCount[i])
+		scale[i] = l + mean
+		top = max(top, scale[i])
+	}
+	for i := range scale {
+		scale[i] = math.Exp(scale[i] - top)
+	}
+	var logZ, info [realisations]float64
+	var sums [chunks][]float64
+	var wg sync.WaitGroup
+	tickets := make(chan struct{}, max(workers, 1))
+	for c := range chunks {
+		wg.Add(1)
+		tickets <- struct{}{}
+		go func() {
+			defer wg.Done()
+			defer func() { <-tickets }()
+			sums[c] = make([]float64, n)
+			x := make([]float64, n+1) // x[i+1] is X_i in its units, x[0] the start
+			for r := c; r < realisations; r += chunks {
+				rng := random.New(o.seed, "shrinkage", uint64(r))
+				first := start.draw(rng) - start.mean
+				dev := first
+				x[0] = math.Exp(dev)
+				for i, live := range o.LiveCount {
+					dev -= (rng.ExpFloat64() - 1) / float64(live)
+					x[i+1] = math.Exp(dev)
+				}
+				var z, lz float64
+				for i := range n {
+					w := scale[i] * shell(x, down, i)
+					z += w
+					if w > 0 {
+						lz += w * o.LogLikelihood[i]
+					}
+				}
+				for i := range n {
+					sums[c][i] += scale[i] * shell(x, down, i) / z
+				}
+				logZ[r] = math.Log(z) + top
+				info[r] = lz/z - logZ[r]
+			}
+		}()
+	}
+	wg.Wait()
+	o.LogEvidence, o.LogEvidenceError = meanSD(logZ[:])
+	o.Information, _ = meanSD(info[:])
+	o.FormulaError = math.Sqrt(max(o.Information, 0) / float64(o.LivePoints))
+	o.LogWeight = make([]float64, n)
+	var square float64
+	for i := range n {
+		var p float64
+		for c := range chunks {
+			p += sums[c][i] / realisations
+		}
+		o.LogWeight[i] = math.Log(p)
+		square += p * p
+	}
+	o.EffectiveSamples = 1 / square
+}
+
+// shell is the volume of point i in units of X_i's expectation.
+func shell(x, down []float64, i int) float64 {
+	before := x[i] / down[i]
+	here := x[i+1]
+	if i == 0 {
+		before = 2*before - here
+	}
+	var after float64
+	if i+2 < len(x) {
+		after = x[i+2] * down[i+1]
+	} else {
+		after = -here
+	}
+	return 0.5 * (before - after)
+}
+
+// shrinkage is the distribution of the prior volume of non-zero likelihood,
+// seen through draws from the prior: ln X, X ~ Beta(a, b); b = 0 means X = 1.
+type shrinkage struct {
+	a, b float64
+	mean float64
+}
+
+// priorShrinkage removes the zeros one by one with falling live number. Where
+// the draws went on until enough were above zero, the last of them is there by
+// that rule and does not count.
+func (o *Outcome) priorShrinkage() shrinkage {
+	s := shrinkage{a: float64(o.PriorDraws-o.PriorZeros) + 1, b: float64(o.PriorZeros)}
+	if o.openEnded {
+		s.a--
+	}
+	if s.b == 0 {
+		return s
+	}
+	s.mean = mathext.Digamma(s.a) - mathext.Digamma(s.a+s.b)
+	return s
+}
+
+func (s shrinkage) draw(rng *random.Rand) float64 {
+	if s.b == 0 {
+		return 0
+	}
+	// Two Gammas, not one Beta: the logarithm keeps its digits for tiny X.
+	x := distuv.Gamma{Alpha: s.a, Beta: 1, Src: rng}.Rand()
+	y := distuv.Gamma{Alpha: s.b, Beta: 1, Src: rng}.Rand()
+	return math.Log(x) - math.Log(x+y)
+}
+
+func meanSD(v []float64) (mean, sd float64) {
+	for _, x := range v {
+		mean += x / float64(len(v))
+	}
+	for _, x := range v {
+		sd += (x - mean) * (x - mean) / float64(len(v)-1)
+	}
+	return mean, math.Sqrt(sd)
+}

@@ -1,0 +1,142 @@
+package sampler
+
+import (
+	"fmt"
+	"math"
+	"strings"
+
+	"knell/internal/random"
+)
+
+// Status says why a run ended.
+type Status int
+
+const (
+	Converged   Status = iota // the remaining evidence or the wanted error was reached
+	CallLimit                 // Settings.MaxCalls was reached
+	Interrupted               // the context was cancelled
+)
+
+func (s Status) String() string {
+	switch s {
+	case Converged:
+		return "converged"
+	case CallLimit:
+		return "call limit"
+	case Interrupted:
+		return "interrupted"
+	}
+	return fmt.Sprintf("Status(%d)", int(s))
+}
+
+// Phase counts the work done by one way of drawing.
+type Phase struct {
+	Name   string // "prior", "ellipsoids" or "slices"
+	Calls  int64  // likelihood calls
+	Points int64  // points accepted
+}
+
+// Outcome is a finished run, or several merged ones. Its slices have one
+// element per dead point, in order of rising likelihood.
+type Outcome struct {
+	LogEvidence      float64 // ln of the integral of L over the cube, nats
+	LogEvidenceError float64 // its standard deviation over simulated shrinkages, nats
+	FormulaError     float64 // sqrt(Information / live points), nats, for comparison
+	Information      float64 // nats
+
+	Status  Status
+	Partial bool // ended before convergence; the numbers hold what was seen so far
+
+	Calls      int64 // likelihood calls
+	Iterations int   // batches
+	LivePoints int   // summed over runs
+	Runs       int
+
+	// PriorDraws counts the draws from the prior that made the first live
+	// points, PriorZeros those of them with zero likelihood. The latter are not
+	// among the points; the evidence accounts for their volume.
+	PriorDraws, PriorZeros int64
+
+	Points        [][]float64 // in the unit cube
+	LogLikelihood []float64   // nats
+	LogWeight     []float64   // posterior weight, its exponentials sum to 1
+	LiveCount     []int       // live points just before the point was removed
+
+	EffectiveSamples float64 // (sum w)² / sum w²
+
+	// InsertionRankP is the p-value of a Kolmogorov-Smirnov test that the
+	// insertion ranks are uniform, InsertionRankBlockP that of the worst part of
+	// about one live set's length, corrected for the number of parts.
+	InsertionRankP, InsertionRankBlockP float64
+
+	Phases   []Phase
+	Warnings []string
+	Verdict  string // "sound", or what is doubtful and what to change
+
+	seed      uint64
+	openEnded bool // the prior draws went on until enough were above zero
+	ranks     []float64
+}
+
+// doubtfulP is the p-value of insertion ranks below which a run is in doubt.
+const doubtfulP = 1e-3
+
+// warn adds a warning.
+func (o *Outcome) warn(format string, args ...any) {
+	o.Warnings = append(o.Warnings, fmt.Sprintf(format, args...))
+}
+
+// judge fills in the rank tests and the verdict.
+func (o *Outcome) judge() {
+	o.InsertionRankP = uniformP(o.ranks)
+	o.InsertionRankBlockP = blockP(o.ranks, o.LivePoints/max(o.Runs, 1))
+	var doubts []string
+	if p := min(o.InsertionRankP, o.InsertionRankBlockP); p < doubtfulP {
+		o.warn("insertion ranks are not uniform: p = %.2g", p)
+		doubts = append(doubts, "new points were not drawn fairly: raise LivePoints or SliceSteps")
+	}
+	if o.Partial {
+		doubts = append(doubts, "the run did not end by itself ("+o.Status.String()+"): let it finish")
+	}
+	if o.LivePoints < 10*o.dim() {
+		doubts = append(doubts, fmt.Sprintf("%d live points are few in %d dimensions: raise LivePoints", o.LivePoints, o.dim()))
+	}
+	o.Verdict = "sound"
+	if len(doubts) > 0 {
+		o.Verdict = "doubtful: " + strings.Join(doubts, "; ")
+	}
+}
+
+func (o *Outcome) dim() int {
+	if len(o.Points) == 0 {
+		return 0
+	}
+	return len(o.Points[0])
+}
+
+// EqualWeight draws n points of equal weight from the posterior by systematic
+// resampling, in random order; n = 0 means as many as EffectiveSamples. index
+// holds each draw's place in Points. A point of large weight may come more than
+// once. The points are shared with o and must not be changed.
+func (o *Outcome) EqualWeight(seed uint64, n int) (points [][]float64, index []int) {
+	if n <= 0 {
+		n = max(1, int(o.EffectiveSamples))
+	}
+	rng := random.New(seed, "equal weight")
+	offset := rng.Float64()
+	var sum float64
+	for i, lw := range o.LogWeight {
+		sum += math.Exp(lw) * float64(n)
+		for len(index) < n && offset+float64(len(index)) < sum {
+			index = append(index, i)
+		}
+	}
+	for last := len(o.LogWeight) - 1; len(index) < n && last >= 0; { // rounding of the sum
+		index = append(index, last)
+	}
+	rng.Shuffle(len(index), func(i, j int) { index[i], index[j] = index[j], index[i] })
+	for _, i := range index {
+		points = append(points, o.Points[i])
+	}
+	return points, index
+}

@@ -1,0 +1,86 @@
+package sampler
+
+import (
+	"math"
+	"math/rand/v2"
+	"slices"
+	"sort"
+)
+
+// ranks collects the insertion ranks of a run. The new points of a batch enter
+// one after another; each takes its rank among the survivors and those that
+// entered before it. If the draws are fair, all these ranks are independent and
+// uniform (MNRAS 497, 5256 (2020)).
+type ranks struct {
+	order []float64 // sorted log-likelihoods of survivors and entered points
+	u     []float64 // rank made continuous on [0, 1)
+}
+
+// begin starts a batch with the survivors' log-likelihoods.
+func (r *ranks) begin(survivors []float64) {
+	r.order = append(r.order[:0], survivors...)
+	slices.Sort(r.order)
+}
+
+// enter adds a point. Its place among equals, and within its rank, is random.
+func (r *ranks) enter(l float64, rng *rand.Rand) {
+	lo := sort.SearchFloat64s(r.order, l)
+	hi := lo
+	for hi < len(r.order) && r.order[hi] == l {
+		hi++
+	}
+	rank := lo + rng.IntN(hi-lo+1)
+	r.u = append(r.u, (float64(rank)+rng.Float64())/float64(len(r.order)+1))
+	r.order = slices.Insert(r.order, lo, l)
+}
+
+// uniformP returns the p-value of the Kolmogorov-Smirnov test that u is drawn
+// from the uniform distribution on [0, 1), or 1 for fewer than 8 values. u is
+// left as it is.
+func uniformP(u []float64) float64 {
+	n := len(u)
+	if n < 8 {
+		return 1
+	}
+	s := slices.Clone(u)
+	slices.Sort(s)
+	var d float64
+	for i, x := range s {
+		d = max(d, x-float64(i)/float64(n), float64(i+1)/float64(n)-x)
+	}
+	// Finite-n correction of the limit law: Stephens, J. R. Stat. Soc. B 32,
+	// 115 (1970), from memory.
+	root := math.Sqrt(float64(n))
+	return kolmogorovTail((root + 0.12 + 0.11/root) * d)
+}
+
+// kolmogorovTail is the upper tail of the Kolmogorov distribution,
+// 2 Σ (-1)^(j-1) exp(-2 j² x²).
+func kolmogorovTail(x float64) float64 {
+	if x < 0.2 { // 1 - 5e-13 there, and the series converges slowly
+		return 1
+	}
+	var sum float64
+	sign := 1.0
+	for j := 1.0; j <= 100; j++ {
+		term := math.Exp(-2 * j * j * x * x)
+		sum += sign * term
+		sign = -sign
+		if term < 1e-18 {
+			break
+		}
+	}
+	return min(1, max(0, 2*sum))
+}
+
+// blockP tests blocks of about n consecutive ranks, which sees trouble confined
+// to a part of the run, and returns the least p-value corrected for the number
+// of blocks.
+func blockP(u []float64, n int) float64 {
+	blocks := max(1, len(u)/max(n, 1))
+	least := 1.0
+	for i := range blocks {
+		least = min(least, uniformP(u[i*len(u)/blocks:(i+1)*len(u)/blocks]))
+	}
+	return -math.Expm1(float64(blocks) * math.Log1p(-min(least, 1-1e-16)))
+}

@@ -1,0 +1,104 @@
+package sampler
+
+import (
+	"context"
+	"fmt"
+	"math"
+)
+
+// Progress is the state of a run between two batches.
+type Progress struct {
+	Run       int   // number of the run, from 0
+	Iteration int   // batches of this run
+	Calls     int64 // likelihood calls of all runs
+
+	// Of all finished runs and this one, in nats, by the formula; the outcome
+	// has the simulated values.
+	LogEvidence, LogEvidenceError float64
+
+	LogLikelihood float64 // of the worst live point, nats
+	Remaining     float64 // ln(1 + Z'/Z), nats, see Settings.Remaining
+	Fraction      float64 // rough share of the work done, 0 to 1, never falling
+	Efficiency    float64 // accepted points per call in the last batch
+	Phase         string  // way of drawing of the last batch
+}
+
+// Run computes the evidence of the targets that newTarget makes, one per
+// worker, all of the same likelihood.
+//
+// Equal settings give equal bits, whatever the number of workers. A cancelled
+// context gives a Partial outcome and no error: the batch under way is dropped
+// and the live points are counted as they stand. Only if it comes before the
+// first live points are complete is there nothing to return but the context's
+// error. Other errors are a *SettingError, a *PointError, an error of newTarget,
+// or a likelihood that is zero wherever it was tried.
+func Run(ctx context.Context, newTarget func() (Target, error), s Settings) (*Outcome, error) {
+	first, err := newTarget()
+	if err != nil {
+		return nil, fmt.Errorf("sampler: target of worker 0: %w", err)
+	}
+	s, err = s.resolve(first.Dim())
+	if err != nil {
+		return nil, err
+	}
+	p, err := newPool(newTarget, first, s.Workers)
+	if err != nil {
+		return nil, err
+	}
+	var (
+		parts  []*Outcome
+		result *Outcome
+		prior  ledger
+	)
+	for {
+		r := newRunner(p, s, len(parts), prior)
+		part, err := r.whole(ctx)
+		if err != nil {
+			if ctx.Err() == nil || result == nil {
+				return nil, err
+			}
+			// The next run had no live points yet: what is there, stands.
+			result.Status = Interrupted
+			result.Partial = true
+			result.warn("interrupted at an error of %.3g nat, %.3g wanted", result.LogEvidenceError, s.EvidenceError)
+			result.judge()
+			return result, nil
+		}
+		parts = append(parts, part)
+		if result, err = merge(parts, s.Workers); err != nil {
+			return nil, err
+		}
+		if len(parts) == 1 {
+			result.Warnings = part.Warnings
+		}
+		if part.Status != Converged || s.EvidenceError == 0 || result.LogEvidenceError <= s.EvidenceError {
+			return result, nil
+		}
+		if len(parts) == s.MaxRuns {
+			result.warn("%d runs reached an error of %.3g nat, %.3g wanted: raise MaxRuns or LivePoints", len(parts), result.LogEvidenceError, s.EvidenceError)
+			return result, nil
+		}
+		if s.MaxCalls != 0 && result.Calls+int64(s.LivePoints) > s.MaxCalls {
+			result.Status = CallLimit
+			result.warn("MaxCalls = %d reached at an error of %.3g nat, %.3g wanted", s.MaxCalls, result.LogEvidenceError, s.EvidenceError)
+			return result, nil
+		}
+		ratio := result.LogEvidenceError / s.EvidenceError
+		prior = ledger{
+			runs:     len(parts),
+			wanted:   min(s.MaxRuns, max(len(parts)+1, int(math.Ceil(float64(len(parts))*ratio*ratio)))),
+			calls:    result.Calls,
+			logZ:     result.LogEvidence,
+			variance: result.LogEvidenceError * result.LogEvidenceError,
+			fraction: r.prior.fraction,
+		}
+	}
+}
+
+// ledger is what earlier runs leave for the progress of the next.
+type ledger struct {
+	runs, wanted   int
+	calls          int64
+	logZ, variance float64
+	fraction       float64
+}
