@@ -117,12 +117,14 @@ type follower struct {
 const followed = 5
 
 // Steps of the walk in u. A root is accepted within followTolerance of its
-// prediction, against spacings between overtones of at least κ ≈ 0.03.
+// prediction. Overtones lie at least κ ≈ 0.03 apart over most of the range, but
+// some pairs pass each other within 0.006 near spin 0.97 (l=3, m=1, n=5 and 6)
+// or 0.99 (l=4, m=2, n=4 and 5), and turn sharply there.
 const (
-	firstStep       = 0.002
+	firstStep       = 1e-4
 	largestStep     = 0.05
-	smallestStep    = 1e-6
-	followTolerance = 1e-3
+	smallestStep    = 1e-7
+	followTolerance = 1e-4
 )
 
 func newFollower(l, m, n int) (*follower, error) {
@@ -136,6 +138,9 @@ func newFollower(l, m, n int) (*follower, error) {
 }
 
 func (f *follower) push(u float64, w, a complex128) {
+	if f.known > 0 && u-f.u[f.known-1] < smallestStep/2 {
+		f.known-- // two points so close would spoil the prediction
+	}
 	if f.known == followed {
 		copy(f.u[:], f.u[1:])
 		copy(f.w[:], f.w[1:])
@@ -170,7 +175,7 @@ func (f *follower) advance(target float64) error {
 	for f.u[f.known-1] < target {
 		from := f.u[f.known-1]
 		next, short := from+f.step, false
-		if next >= target {
+		if next >= target-smallestStep/2 {
 			next, short = target, true
 		}
 		guessW, guessA := f.predict(next)
@@ -185,7 +190,7 @@ func (f *follower) advance(target float64) error {
 			continue
 		}
 		f.push(next, w, a)
-		if miss < followTolerance/4 && !short {
+		if miss < followTolerance/8 && !short {
 			f.step = min(1.5*f.step, largestStep)
 		}
 	}
