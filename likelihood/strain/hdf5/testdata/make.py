@@ -18,8 +18,9 @@ def strain(n, seed):
     return 1e-19 * np.cumsum(rng.standard_normal(n)) + 1e-21 * rng.standard_normal(n)
 
 
-def layout(name, rate, seconds, options, start=1400000000, site="H1"):
-    """One file in the layout of open-data strain."""
+def layout(name, rate, seconds, options, start=1400000000, site="H1", gaps=False):
+    """One file in the layout of open-data strain. With gaps, second 3 is flagged
+    as without data and seconds 5 to 5.5 are NaN."""
     with h5py.File(name, "w", libver="earliest") as f:
         meta = f.create_group("meta")
         for key, text in [("Description", "Invented strain"), ("Detector", site), ("Observatory", site[0]),
@@ -28,13 +29,18 @@ def layout(name, rate, seconds, options, start=1400000000, site="H1"):
         meta.create_dataset("GPSstart", data=np.int64(start))
         meta.create_dataset("Duration", data=np.int64(seconds))
         n = rate * seconds
-        d = f.create_dataset("strain/Strain", data=strain(n, 7), **options)
+        values = strain(n, 7)
+        if gaps:
+            values[5 * rate:5 * rate + rate // 2] = np.nan
+        d = f.create_dataset("strain/Strain", data=values, **options)
         d.attrs["Npoints"] = np.int64(n)
         d.attrs["Xstart"] = np.int64(start)
         d.attrs["Xspacing"] = 1.0 / rate
         for key, text in [("Xlabel", "GPS time"), ("Xunits", "second"), ("Ylabel", "Strain"), ("Yunits", "")]:
             d.attrs.create(key, text, dtype=VLEN)
         mask = np.full(seconds, 127, np.uint32)
+        if gaps:
+            mask[3] = 126
         q = f.create_dataset("quality/simple/DQmask", data=mask, chunks=(seconds,), compression=1, fletcher32=True)
         q.attrs["Xstart"] = np.int64(start)
         q.attrs["Xspacing"] = 1.0
@@ -67,6 +73,7 @@ def types(name):
         space = h5py.h5s.create_simple((4,))
         plist = h5py.h5p.create(h5py.h5p.DATASET_CREATE)
         plist.set_layout(h5py.h5d.COMPACT)
+        plist.set_obj_track_times(False)
         d = h5py.h5d.create(g.id, b"compact", h5py.h5t.IEEE_F64LE, space, plist)
         d.write(h5py.h5s.ALL, h5py.h5s.ALL, np.array([1.0, 2.0, 3.0, 4.5]))
         f["soft"] = h5py.SoftLink("/numbers/matrix")
@@ -127,9 +134,10 @@ if len(sys.argv) > 1:
 layout("contiguous.hdf5", 256, 4, {})
 layout("gzip.hdf5", 256, 4, dict(chunks=(256,), compression=4), site="L1")
 layout("shuffle.hdf5", 128, 8, dict(chunks=(300,), compression=4, shuffle=True), site="L1")
+layout("gaps.hdf5", 32, 8, {}, gaps=True)
 types("types.hdf5")
 chunked("chunked.hdf5")
-names = ["contiguous.hdf5", "gzip.hdf5", "shuffle.hdf5", "types.hdf5", "chunked.hdf5"]
+names = ["contiguous.hdf5", "gzip.hdf5", "shuffle.hdf5", "gaps.hdf5", "types.hdf5", "chunked.hdf5"]
 with open("expected.json", "w") as f:
     json.dump({n: read(n) for n in names}, f, indent=1, sort_keys=True)
     f.write("\n")
