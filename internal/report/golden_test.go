@@ -1,0 +1,88 @@
+package report
+
+import (
+	"bytes"
+	"flag"
+	"math"
+	"os"
+	"path/filepath"
+	"testing"
+)
+
+var update = flag.Bool("update", false, "rewrite the golden files")
+
+// golden compares got with a file of testdata.
+func golden(t *testing.T, name string, got []byte) {
+	t.Helper()
+	path := filepath.Join("testdata", name)
+	if *update {
+		if err := os.WriteFile(path, got, 0o644); err != nil {
+			t.Fatal(err)
+		}
+	}
+	want, err := os.ReadFile(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if !bytes.Equal(got, want) {
+		t.Errorf("%s differs (rewrite with -update and read the change); got:\n%s", path, got)
+	}
+}
+
+// someWeighing is an invented result.
+func someWeighing() *Weighing {
+	return &Weighing{
+		Event: "Marram Point, loud remnant", Seed: 20260, Version: "0.0-test",
+		LogEvidenceNoise: 123456.78125,
+		Hypotheses: []Hypothesis{
+			{
+				Name: "horizon", Model: "ringdown", LogEvidence: 123556.0, LogEvidenceError: 0.104,
+				LogEvidenceOver: 99.21875, Calls: 1234567, Seconds: 31.25, Verdict: "sound",
+				Dimensions: 4, LivePoints: 1000, Information: 11.5, EffectiveSamples: 4300,
+				InsertionRankP: 0.43, Status: "remaining evidence below the limit", MaxLogLikelihood: 112.5,
+				Summary: []ParameterSummary{
+					{"mass", "solar masses", 68.23, 64.11, 72.92},
+					{"spin", "", 0.6912, 0.6123, 0.7456},
+					{"amplitude", "", 1.234e-21, 1.1e-21, 1.4e-21},
+				},
+			},
+			{
+				Name: "surface", Model: "cavity", LogEvidence: 123565.8, LogEvidenceError: 0.11,
+				LogEvidenceOver: 109.01875, Calls: 2345678, Seconds: 48.5, Verdict: "doubtful",
+				Posterior:  "posterior-surface.csv",
+				Dimensions: 7, LivePoints: 1000, Information: 17.25, EffectiveSamples: 5100,
+				InsertionRankP: Number(math.NaN()), Status: "remaining evidence below the limit", MaxLogLikelihood: 130.5,
+				Warnings: []string{"insertion ranks are not uniform (p = 0.0004)"},
+				Summary: []ParameterSummary{
+					{"mass", "solar masses", 68.41, 64.35, 73.08},
+					{"spin", "", 0.6921, 0.6112, 0.7468},
+					{"offset", "dex", 3.2, -0.7, 11.1},
+					{"echo_delay", "s", 0.28612, 0.28598, 0.28631},
+				},
+			},
+		},
+		Ratios: []Ratio{
+			{"surface", "horizon", 9.8, 0.151},
+			{"horizon", "surface", -9.8, 0.151},
+			{"horizon", "noise", 99.21875, 0.104},
+		},
+		Sites: []Site{{"H1", "marram-h1.hdf5", "median of 4 s segments", -0.0061, 0.43, -0.31}},
+		Analysis: Analysis{Time: 1400000123.25, Start: 0.003, SampleRate: 2048, Duration: 4,
+			Band: [2]Number{30, 900}, Gate: 0.5},
+		Cautions: []string{"the noise spectrum was estimated from 12 segments only"},
+	}
+}
+
+func somePosterior() Posterior {
+	return Posterior{
+		Name:    "surface",
+		Columns: []string{"spin", "mass", "echo delay, first", "log_likelihood"}, // not sorted; a comma
+		Units:   []string{"", "solar masses", "s", "nat"},
+		Values: [][]float64{
+			{0.1, 0.69, math.Nextafter(0.69, 1)},
+			{68, math.Pi, 1e-310},
+			{0.28612, math.NaN(), math.Inf(1)},
+			{-1e300, 0, math.Copysign(0, -1)},
+		},
+	}
+}

@@ -1,0 +1,142 @@
+package report
+
+import (
+	"bytes"
+	"encoding/json"
+	"io"
+)
+
+// Weighing is the document of `knell weigh --json` and of evidence.json: the
+// evidences of one event's hypotheses and their ratios. Logarithms are natural, in
+// nats; fields may be added, never renamed.
+type Weighing struct {
+	Event   string `json:"event"`
+	Seed    uint64 `json:"seed"`
+	Version string `json:"version"`
+	// Partial says that the run was interrupted and its numbers are not final.
+	Partial bool `json:"partial"`
+	// LogEvidenceNoise is the log-likelihood of noise alone.
+	LogEvidenceNoise Number       `json:"log_evidence_noise"`
+	Hypotheses       []Hypothesis `json:"hypotheses"`
+	Ratios           []Ratio      `json:"ratios"`
+	Sites            []Site       `json:"sites"`
+	Analysis         Analysis     `json:"analysis"`
+	// Cautions are this run's own doubts, each one sentence.
+	Cautions []string `json:"cautions"`
+	// OddsConvention and Reading say how to read any such document. WriteJSON fills
+	// them.
+	OddsConvention string   `json:"odds_convention"`
+	Reading        []string `json:"reading"`
+}
+
+// Hypothesis is what the run found of one hypothesis.
+type Hypothesis struct {
+	Name             string             `json:"name"`
+	Model            string             `json:"model"`
+	LogEvidence      Number             `json:"log_evidence"`
+	LogEvidenceError Number             `json:"log_evidence_error"`
+	LogEvidenceOver  Number             `json:"log_evidence_over_noise"`
+	Calls            int64              `json:"calls"` // likelihood calls
+	Seconds          Number             `json:"seconds"`
+	Verdict          string             `json:"verdict"`   // whether the number can be trusted, in a few words
+	Posterior        string             `json:"posterior"` // name of the CSV file beside evidence.json
+	Dimensions       int                `json:"dimensions"`
+	LivePoints       int                `json:"live_points"`
+	Information      Number             `json:"information"` // nat
+	EffectiveSamples Number             `json:"effective_samples"`
+	InsertionRankP   Number             `json:"insertion_rank_p"`
+	Status           string             `json:"status"` // why the run stopped
+	Partial          bool               `json:"partial"`
+	MaxLogLikelihood Number             `json:"max_log_likelihood_over_noise"`
+	Warnings         []string           `json:"warnings"`
+	Summary          []ParameterSummary `json:"summary"`
+}
+
+// ParameterSummary is the median of one posterior column and the ends of its
+// central 90 % interval, in the unit.
+type ParameterSummary struct {
+	Parameter string `json:"parameter"`
+	Unit      string `json:"unit"` // empty for a pure number
+	Median    Number `json:"median"`
+	Low90     Number `json:"low90"`
+	High90    Number `json:"high90"`
+}
+
+// Ratio is the Bayes factor of one hypothesis over another.
+type Ratio struct {
+	For            string `json:"for"`
+	Against        string `json:"against"`
+	LogBayesFactor Number `json:"log_bayes_factor"`
+	Error          Number `json:"error"`
+}
+
+// Site is what the run used of one site.
+type Site struct {
+	Code         string `json:"code"`
+	Strain       string `json:"strain"` // the file, or what it was made from
+	Noise        string `json:"noise"`  // where the noise spectrum came from
+	Delay        Number `json:"delay_s"`
+	AntennaPlus  Number `json:"antenna_plus"`
+	AntennaCross Number `json:"antenna_cross"`
+}
+
+// Analysis is the stretch of data that the run looked at.
+type Analysis struct {
+	Time       Number    `json:"time_gps"` // the event's, at the geocentre
+	Start      Number    `json:"start_s"`  // first analysed moment, after the event's time
+	SampleRate Number    `json:"sample_rate_hz"`
+	Duration   Number    `json:"duration_s"`
+	Band       [2]Number `json:"band_hz"`
+	Gate       Number    `json:"gate_s"` // length of the data marginalised over
+}
+
+// oddsConvention says how the ratios are signed.
+const oddsConvention = "log_bayes_factor = log_evidence(for) - log_evidence(against), natural logarithm; " +
+	"positive favours the hypothesis named in for"
+
+// reading holds what every evidence ratio's reader should know.
+var reading = [...]string{
+	"an evidence ratio compares hypotheses together with their priors: a wider prior on a parameter " +
+		"that the data do not need lowers the evidence of the hypothesis that has it",
+	"it is not the probability of a hypothesis, which also needs the odds held before the data",
+	"the error covers the sampling only, not the model, the noise spectrum or the calibration",
+	"a claim needs a background: the same ratio on stretches of data with no event in them",
+}
+
+// WriteJSON writes the document as indented JSON and one newline. Lists are never
+// null, and a Number that is not finite is.
+func (w *Weighing) WriteJSON(out io.Writer) error {
+	document := *w
+	document.OddsConvention, document.Reading = oddsConvention, reading[:]
+	document.Hypotheses = make([]Hypothesis, len(w.Hypotheses))
+	for i, h := range w.Hypotheses {
+		h.Warnings = notNil(h.Warnings)
+		h.Summary = notNil(h.Summary)
+		document.Hypotheses[i] = h
+	}
+	document.Ratios = notNil(w.Ratios)
+	document.Sites = notNil(w.Sites)
+	document.Cautions = notNil(w.Cautions)
+	return writeJSON(out, document)
+}
+
+// writeJSON writes any document of this package; nothing reaches out if it cannot
+// be encoded.
+func writeJSON(out io.Writer, document any) error {
+	var text bytes.Buffer
+	encoder := json.NewEncoder(&text)
+	encoder.SetEscapeHTML(false)
+	encoder.SetIndent("", "  ")
+	if err := encoder.Encode(document); err != nil {
+		return err
+	}
+	_, err := out.Write(text.Bytes())
+	return err
+}
+
+func notNil[T any](list []T) []T {
+	if list == nil {
+		return []T{}
+	}
+	return list
+}
