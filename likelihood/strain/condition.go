@@ -15,9 +15,9 @@ const (
 	passLow  = 0.8
 	passHigh = 0.9
 	// ringCycles is how long a filter rings, in units of one over the width of
-	// its transition: beyond that its response is below 1e-7 of the peak (see
-	// the test).
-	ringCycles = 6
+	// its transition: beyond that what it removes comes back by less than 1e-7 (see
+	// the tests).
+	ringCycles = 12
 )
 
 // Condition returns the series at a lower sample rate in Hz, without what lies

@@ -177,3 +177,52 @@ func TestSmooth(t *testing.T) {
 	_, err = Smooth(rough, 0.1, 30, 900)
 	wantError(t, "zero in the band", err, "density 0 at 100 Hz")
 }
+
+// want: sum over a Hann window of 2^16 samples times itself, shifted by u.
+func TestLagWindow(t *testing.T) {
+	const n = 1 << 16
+	w := hann(n)
+	for _, u := range []float64{0, 0.125, 0.25, 0.5, 0.75, 0.9375, 1} {
+		shift := int(u * n)
+		sum := 0.0
+		for i := shift; i < n; i++ {
+			sum += w[i] * w[i-shift]
+		}
+		if want := sum / (3. / 8 * n); math.Abs(lagWindow(u)-want) > 1e-12 {
+			t.Errorf("lagWindow(%v) = %v, want %v", u, lagWindow(u), want)
+		}
+	}
+}
+
+// A line a million times as strong as the floor is gone 12/lag away from it.
+// The kernel there, a Hann window's transform squared, is at most
+// (1/(pi x (x^2-1)))^2 of its peak, x being the distance in units of 1/lag.
+// (1e-8 is for the aliases of the kernel on a grid.)
+func TestSmoothKeepsLinesApart(t *testing.T) {
+	const step, lag, line = 0.5, 0.25, 1e6
+	s := &Spectrum{Step: step, Density: make([]float64, 2049)}
+	for k := range s.Density {
+		s.Density[k] = 1
+	}
+	const at = 1000
+	s.Density[at] = line
+	out, err := Smooth(s, lag, 30, 900)
+	if err != nil {
+		t.Fatal(err)
+	}
+	peak := out.Density[at] - 1
+	// The line's power spreads over the kernel's 1.44/lag or so.
+	if want := line * step * lag / 1.5; math.Abs(peak/want-1) > 0.01 {
+		t.Errorf("peak %v, want %v", peak, want)
+	}
+	for k := 60; k < 1800; k++ {
+		x := math.Abs(float64(k-at)) * step * lag
+		if x < 2 {
+			continue
+		}
+		bound := peak * math.Pow(math.Pi*x*(x*x-1), -2)
+		if excess := out.Density[k] - 1; excess > 1.01*bound+1e-8 || excess < -1e-9 {
+			t.Fatalf("%v/lag from the line the density is raised by %v, want at most %v", x, excess, bound)
+		}
+	}
+}
