@@ -41,7 +41,8 @@ const (
 // Taper and filters spoil Edge samples at each end of the result; Check refuses
 // them.
 //
-// The series must have no gaps (see Stretch), the ratio of the rates must be a
+// The whole series is transformed at once, in three times its memory: of a file
+// of an hour, Slice what is needed first. It must have no gaps (see Stretch), the ratio of the rates must be a
 // whole number, and something must be left between the edges.
 func Condition(s *Series, rate, lowCut float64) (*Series, error) {
 	q := math.Round(s.SampleRate / rate)

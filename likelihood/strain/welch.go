@@ -55,9 +55,10 @@ func Welch(x []float64, rate, segmentSeconds float64, average Average) (*Spectru
 // The median is divided by its expectation for n independent segments of unit
 // mean, MedianBias(n). Segments that overlap by half are slightly correlated
 // (the squares by (1/6)^2 = 1/36), which is left out: it changes the expectation
-// by well under a hundredth.
+// by less than a hundredth (measured on white noise: +0.7 % with 4 segments, less
+// than 0.1 % with 15).
 //
-// Two bins at 0 Hz are low, as the mean is removed. All other bins are unbiased
+// The first two bins are low, as the mean is removed. All others are unbiased
 // where the density is smooth over 2/segmentSeconds.
 //
 // Errors: a segment that is not a whole, even number of samples, or longer than

@@ -37,9 +37,9 @@ func (d *Dataset) readChunks(c *cursor) error {
 	if c.err != nil {
 		return c.err
 	}
-	if n == 0 || int64(element) != int64(d.kind.size) || uint64(n)*uint64(element) > deflateRatio*uint64(d.f.size) {
+	if n == 0 || int64(element) != int64(d.kind.size) || uint64(n)*uint64(element) > d.f.largest() {
 		return d.f.fail(at+1+width, "chunk size", fmt.Sprintf("%d elements of %d bytes", n, element),
-			fmt.Sprintf("at least 1 element of %d bytes, and at most %d times the file's %d bytes", d.kind.size, deflateRatio, d.f.size))
+			fmt.Sprintf("at least 1 element of %d bytes, at most %d bytes in all", d.kind.size, d.f.largest()))
 	}
 	list := &chunks{size: int(n)}
 	if m := d.header.first(messageFilters); m != nil {

@@ -9,10 +9,11 @@ const (
 	layoutCompact    = 0
 	layoutContiguous = 1
 	layoutChunked    = 2
-	// deflateRatio is more than deflate can compress (1032:1, from its longest
-	// match in its shortest code). Data larger than that many times the file
-	// cannot come from it.
-	deflateRatio = 1040
+	// maxRatio is how many times larger than the file a dataset may be, and
+	// maxSmall how large it may be in any case, in bytes. Deflate could reach
+	// 1032, but only on data that are all the same; strain reaches 10 or so.
+	maxRatio = 256
+	maxSmall = 1 << 20
 )
 
 // Dataset is an array of the file. Elements are counted from 0 in storage
@@ -56,9 +57,9 @@ func (f *File) Dataset(path string) (*Dataset, error) {
 		return nil, err
 	}
 	high, size := bits.Mul64(n, uint64(d.kind.size))
-	if high != 0 || size > deflateRatio*uint64(f.size) {
+	if high != 0 || size > f.largest() {
 		return nil, f.fail(c.base, "dataset "+path, fmt.Sprintf("%d elements of %d bytes", n, d.kind.size),
-			fmt.Sprintf("at most %d times the file's %d bytes", deflateRatio, f.size))
+			fmt.Sprintf("at most %d bytes in a file of %d", f.largest(), f.size))
 	}
 	d.elements = int(n)
 	if d.fill, err = d.header.fill(d.kind); err != nil {
@@ -69,6 +70,9 @@ func (f *File) Dataset(path string) (*Dataset, error) {
 	}
 	return d, d.layout(c)
 }
+
+// largest is the most bytes a dataset or chunk may have.
+func (f *File) largest() uint64 { return max(maxSmall, maxRatio*uint64(f.size)) }
 
 // layout reads a layout message of version 3 and finds the data.
 func (d *Dataset) layout(c *cursor) error {

@@ -16,7 +16,7 @@
 // the size of the file before anything is allocated or read, each walk over
 // linked structures has the file's size as its budget of bytes (so that a cycle
 // ends in an error), and inflated data are limited by the declared size of a
-// chunk, which in turn is limited to what deflate could have made of the file.
+// chunk, which in turn is limited to 256 times the file (or 1 MiB).
 // Every error is an *Error with the file, the offset, what was found there and
 // what would have been accepted.
 //
