@@ -9,11 +9,11 @@ import (
 
 // Transition edges of the filters in Condition, as fractions of the frequency
 // they belong to. The band that is left untouched is
-// [passLow*lowCut, passHigh*rate/2].
+// [passLow*lowCut, PassHigh*rate/2].
 const (
 	stopLow  = 0.5
 	passLow  = 0.8
-	passHigh = 0.9
+	PassHigh = 0.9
 	// ringCycles is how long a filter rings, in units of one over the width of
 	// its transition: beyond that what it removes comes back by less than 1e-7 (see
 	// the tests).
@@ -49,8 +49,8 @@ func Condition(s *Series, rate, lowCut float64) (*Series, error) {
 	if !(rate >= 1) || rate != math.Floor(rate) || q < 1 || q*rate != s.SampleRate {
 		return nil, fmt.Errorf("%v: got sample rate %v Hz, want %v Hz over a whole number, %s", s, rate, s.SampleRate, divisors(s.SampleRate))
 	}
-	if !(lowCut > 0 && lowCut < passHigh*rate/2) {
-		return nil, fmt.Errorf("%v: got lower edge of the band %v Hz, want above 0 and below %v Hz", s, lowCut, passHigh*rate/2)
+	if !(lowCut > 0 && lowCut < PassHigh*rate/2) {
+		return nil, fmt.Errorf("%v: got lower edge of the band %v Hz, want above 0 and below %v Hz", s, lowCut, PassHigh*rate/2)
 	}
 	if len(s.Gaps) > 0 {
 		g := s.Gaps[0]
@@ -100,7 +100,7 @@ func filter(x []float64, rate float64, ratio int, taper, lowCut float64) []float
 		f := float64(k) * step
 		w := smoothStep((f/lowCut - stopLow) / (passLow - stopLow))
 		if ratio > 1 {
-			w *= smoothStep((1 - f/nyquist) / (1 - passHigh))
+			w *= smoothStep((1 - f/nyquist) / (1 - PassHigh))
 		}
 		c[k] *= complex(w/float64(size), 0)
 	}

@@ -40,7 +40,7 @@ func TestCheckAndStretch(t *testing.T) {
 		want     string // "" for no error
 	}{
 		{"before the gap", start, start + 1, ""},
-		{"touches the gap", start, start + 1.0001, "(one)"},
+		{"touches the gap with one sample", start, start + 1 + 1./16384, "(one)"},
 		{"between", start + 1.01, start + 3, ""},
 		{"second gap", start + 2.9, start + 3.1, "(two)"},
 		{"to the end", start + 3.1, start + 4, ""},

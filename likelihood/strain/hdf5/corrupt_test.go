@@ -2,6 +2,7 @@ package hdf5
 
 import (
 	"bytes"
+	"encoding/binary"
 	"fmt"
 	"math"
 	"math/bits"
@@ -9,6 +10,8 @@ import (
 	"path/filepath"
 	"reflect"
 	"runtime"
+	"slices"
+	"strings"
 	"testing"
 )
 
@@ -204,6 +207,64 @@ func TestHostileFiles(t *testing.T) {
 		}
 		if got, limit := after.TotalAlloc-before.TotalAlloc, uint64(100*len(b)); got > limit {
 			t.Errorf("%s allocated %d bytes, want at most %d", tc.why, got, limit)
+		}
+	}
+}
+
+// Trees that lead back to themselves, or many times to the same place.
+func TestTreesThatRepeat(t *testing.T) {
+	const children = 300
+	node := func(level byte, child int) []byte {
+		b := append([]byte("TREE\x00"), level, children&0xff, children>>8)
+		b = append(b, make([]byte, 2*width)...)
+		for range children {
+			b = binary.LittleEndian.AppendUint64(b, 0)
+			b = binary.LittleEndian.AppendUint64(b, uint64(child))
+		}
+		return b
+	}
+	size := len(node(0, 0))
+	visits := 0
+	walk := func(b []byte) error {
+		f := &File{r: bytes.NewReader(b), size: int64(len(b)), name: "memory"}
+		return f.walkTree(f.budget(), 0, 0, -1, 0, width, func(*cursor, uint64, int64) error { visits++; return nil })
+	}
+	// 27 million visits, were they all made.
+	err := walk(slices.Concat(node(2, size), node(1, 2*size), node(0, 0)))
+	if err == nil || !strings.Contains(err.Error(), "refer back") || visits > 3*children {
+		t.Errorf("after %d visits of a repeating tree: %v", visits, err)
+	}
+	err = walk(node(7, 0))
+	if err == nil || !strings.Contains(err.Error(), "level: got 7, want 6") {
+		t.Errorf("a node that is its own child: %v", err)
+	}
+}
+
+// Every bit of data under a checksum matters.
+func TestChecksum(t *testing.T) {
+	b, err := os.ReadFile("testdata/chunked.hdf5")
+	if err != nil {
+		t.Fatal(err)
+	}
+	open := func(b []byte) *Dataset {
+		f, err := New(bytes.NewReader(b), int64(len(b)), "memory")
+		if err != nil {
+			t.Fatal(err)
+		}
+		d, err := f.Dataset("chunked/fletcher")
+		if err != nil {
+			t.Fatal(err)
+		}
+		return d
+	}
+	for _, c := range open(b).chunks.list {
+		for i := range c.stored {
+			bad := bytes.Clone(b)
+			bad[int(c.at)+i] ^= 1 << (i % 8)
+			_, err := open(bad).Float64s(0, 100)
+			if err == nil || !strings.Contains(err.Error(), "checksum") {
+				t.Fatalf("byte %d of the chunk at %d flipped: %v", i, c.at, err)
+			}
 		}
 	}
 }

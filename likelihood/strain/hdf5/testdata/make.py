@@ -91,6 +91,11 @@ def chunked(name):
         holes = c.create_dataset("holes", (100,), "f8", chunks=(10,), compression=1, fillvalue=-1.0)
         holes[25:35] = values[25:35]
         holes[95:] = values[95:]
+        # Chunks to which a filter was not applied, as their filter masks say.
+        masked = c.create_dataset("masked", (40,), "f8", chunks=(20,), shuffle=True, compression=1)
+        masked.id.write_direct_chunk((0,), values[:20].tobytes(), 0b11)
+        shuffled = values[20:40].view(np.uint8).reshape(20, 8).T.tobytes()
+        masked.id.write_direct_chunk((20,), shuffled, 0b10)
         many = f.create_dataset("many_chunks", data=np.arange(400, dtype="i2"), chunks=(4,))
         for i in range(12):  # enough for continuation blocks
             many.attrs["a%02d" % i] = float(i)
