@@ -1,2 +1,41 @@
-// Package kerr knows the spinning remnant: geometry, quasi-normal modes, angular functions and barrier response.
+// Package kerr knows the remnant: the geometry of a Kerr black hole, its
+// quasi-normal modes, their angular functions, and the barrier that waves from
+// just outside the horizon meet. It knows nothing of waveforms or detectors.
+//
+// Units are G = c = M = 1 with fields going as exp(-iωt + imφ), so a decaying
+// mode has Im ω < 0; frequencies are Mω, lengths and times in M, spins a/M from
+// 0 to MaxSpin. Multiply a time by constants.SolarMassSeconds times the mass to
+// leave the package. All fields have spin weight -2.
+//
+// The road of a mode:
+//
+//  1. radial.go and angular.go hold the two continued fractions whose common
+//     zero is a mode; mode.go solves them together at spin 0 from a table of
+//     starting points and follows the root up in spin (QuasiNormalMode).
+//  2. spheroidal.go expands the angular function in functions of the sphere at
+//     the mode's aω (Spheroidal); its eigenvalue is a second road to the
+//     separation constant.
+//  3. track.go tabulates both over all spins for one polar angle (ModeTrack), so
+//     that a sampler pays less than 0.1 µs per mode and spin.
+//
+// The road of the barrier:
+//
+//  1. upgoing.go integrates the radial equation from far away to the horizon for
+//     one frequency; response.go turns the amplitudes into reflection and
+//     transmission, flux normalised, with the phase of a parity
+//     (BarrierResponse). R is good to 1e-12, in 20 µs.
+//  2. table.go evaluates that on the grid of grid.go for l = m = 2
+//     (WriteBarrierTable, run by go generate through internal/tabulate in about
+//     3 s a parity) and reads the file back.
+//  3. barrier.go embeds the files and serves a sampler: SetSpin once per spin
+//     (30 µs), then Reflection for any number of frequencies (5 ns each). Its
+//     error in R is below 2e-7 at every spin and frequency, as measured by
+//     internal/tabulate -measure.
+//
+// geometry.go has horizons, light rings, temperature, tortoise coordinate and
+// echo delay.
+//
+// Which mode is which: overtone n is the n-th by decay rate at spin 0, and keeps
+// its number along the spin. A few pairs of overtones nearly meet on the way
+// (l=3, m=1, n=5 and 6 at spin 0.9722, for one) and turn sharply there.
 package kerr

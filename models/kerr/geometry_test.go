@@ -11,7 +11,7 @@ import (
 // testdata/geometry.csv.
 func TestGeometryTable(t *testing.T) {
 	lnPlanck := math.Log(constants.PlanckLength / (70 * constants.SolarMassMetres))
-	for _, row := range table(t, "geometry.csv") {
+	for _, row := range readTable(t, "geometry.csv") {
 		a := row["a"]
 		for _, q := range []struct {
 			name      string

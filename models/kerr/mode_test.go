@@ -15,7 +15,7 @@ func TestQuasiNormalModeTable(t *testing.T) {
 	// their conditioning at these overtones costs at most one digit more.
 	const tol = 2e-12
 	var worst float64
-	for _, row := range table(t, "qnm.csv") {
+	for _, row := range readTable(t, "qnm.csv") {
 		l, m, n, spin := int(row["l"]), int(row["m"]), int(row["n"]), row["a"]
 		got, err := QuasiNormalMode(l, m, n, spin)
 		if err != nil {

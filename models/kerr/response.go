@@ -45,7 +45,7 @@ func (p Parity) check() error {
 // |R| > 1.
 type Response struct {
 	Reflection   complex128 // R
-	Transmission complex128 // T
+	Transmission complex128 // T, the same for both parities
 	Separation   float64    // A for spin weight -2
 	Greybody     float64    // 1 - |R|², computed as (ω/k)|T|² so that it keeps its digits
 }
@@ -63,16 +63,15 @@ const (
 // BarrierResponse returns reflection and transmission of the (l, m) wave of
 // spin weight -2 at real frequency omega (Mω, either sign, |Mω| <= MaxFrequency;
 // l from 2 to 8, |m| <= l, spin 0 to MaxSpin). Negative frequencies follow from
-// R_lm(-ω) = conj R_l-m(ω). It integrates the radial equation (upgoing in
-// radial.go's sense: see upgoing); cost about 0.1 ms.
+// R_lm(-ω) = conj R_l-m(ω). R is good to 1e-12; a call costs about 20 µs.
 //
 // R and T follow from the radial amplitudes by
 //
 //	R = d⁴ (-4i kh)(1 - i kh)(1 - 2i kh)² q/K,   K = Re C ∓ 12iω (odd, even)
 //	T = d² i kh (1 - 2i kh) t / (2ω² √(2r+))
 //
-// with d = r+ - r-, kh = 2r+k/d, q = Cin/Cout, t = 1/Cout of upgoing, and C the
-// constant of ApJ 193, 443 (1974).
+// with d = r+ - r-, kh = 2r+k/d, q = Cin/Cout and t = 1/Cout of the solution in
+// upgoing.go, and C the constant of ApJ 193, 443 (1974).
 func BarrierResponse(l, m int, spin, omega float64, parity Parity) (Response, error) {
 	if err := checkSpin(spin); err != nil {
 		return Response{}, err

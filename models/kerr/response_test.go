@@ -10,7 +10,7 @@ import (
 // testdata/response.csv.
 func TestBarrierResponseTable(t *testing.T) {
 	var worstR, worstT, worstSquare float64
-	for _, row := range table(t, "response.csv") {
+	for _, row := range readTable(t, "response.csv") {
 		l, m, spin, omega := int(row["l"]), int(row["m"]), row["a"], row["omega"]
 		for parity, want := range map[Parity]complex128{
 			Odd:  complex(row["re_R_BH_odd"], row["im_R_BH_odd"]),

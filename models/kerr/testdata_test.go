@@ -8,9 +8,9 @@ import (
 	"testing"
 )
 
-// table reads a file of testdata: comments, a header, then numbers. Each row
+// readTable reads a file of testdata: comments, a header, then numbers. Each row
 // comes back by column name.
-func table(t *testing.T, name string) []map[string]float64 {
+func readTable(t *testing.T, name string) []map[string]float64 {
 	t.Helper()
 	f, err := os.Open("testdata/" + name)
 	if err != nil {

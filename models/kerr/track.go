@@ -21,11 +21,11 @@ type trackPoint struct{ omega, north, south complex128 }
 // trackTolerance. Most pieces keep the first grid; where two overtones nearly
 // meet, a branch point close to real spins needs a much finer one.
 const (
-	trackPieces    = 24
+	trackPieces    = 64
 	trackOrder     = 6
 	trackTolerance = 5e-10
-	coarsestPiece  = 16 // steps
-	finestPiece    = 1 << 13
+	coarsestPiece  = 10 // steps
+	finestPiece    = coarsestPiece << 9
 )
 
 // NewModeTrack follows mode (l, m, n) over the spins from 0 to MaxSpin and

@@ -24,12 +24,11 @@ import (
 //
 // which converge for x < 1.
 type background struct {
-	m          int
-	a, w       float64 // spin, ω > 0
-	lambda     float64 // A + a²ω² - 2amω
-	rp, rm, d  float64 // r+, r-, r+ - r-
-	kh         float64 // 2 r+ k/d, never 0
-	waveOffset float64 // δ in φ = k r* + δ at the horizon, with φ = ωr* far away
+	m         int
+	a, w      float64 // spin, ω > 0
+	lambda    float64 // A + a²ω² - 2amω
+	rp, rm, d float64 // r+, r-, r+ - r-
+	kh        float64 // 2 r+ k/d, never 0
 }
 
 func newBackground(m int, spin, omega, separation float64) *background {
@@ -40,8 +39,12 @@ func newBackground(m int, spin, omega, separation float64) *background {
 	if math.Abs(b.kh) < smallWave {
 		b.kh = math.Copysign(smallWave, b.kh)
 	}
-	b.waveOffset = float64(m) * HorizonFrequency(spin) * (b.rp + 2*math.Log(b.d/2))
 	return b
+}
+
+// horizonPhase returns δ: φ = kr* + δ at the horizon when φ = ωr* far away.
+func (b *background) horizonPhase() float64 {
+	return float64(b.m) * HorizonFrequency(b.a) * (b.rp + 2*math.Log(b.d/2))
 }
 
 // matchAt is the x of the matching: far enough inside the circle of convergence
@@ -70,7 +73,7 @@ func (b *background) upgoing() (q, t complex128, err error) {
 	wronskian := f*dh - df*h
 	out := (u*dh - du*h) / wronskian
 	back := (f*du - df*u) / wronskian
-	turn := cmplx.Rect(1, -b.waveOffset)
+	turn := cmplx.Rect(1, -b.horizonPhase())
 	return back / out * turn * turn, turn / out, nil
 }
 
