@@ -185,7 +185,7 @@ func (s *Series) readMask(f *hdf5.File) error {
 	}
 	per := step * s.SampleRate // samples per flag
 	if !(per >= 1) || per != math.Floor(per) || float64(len(mask))*per != float64(len(s.Values)) || start != s.Start() {
-		return fmt.Errorf("%s: %s: got %d flags of %v s from GPS %v, want flags for the %v s of strain from GPS %v",
+		return fmt.Errorf("%s: %s: got %d flags of %v s from GPS %.6f, want flags for the %v s of strain from GPS %.6f",
 			s.File, path, len(mask), step, start, s.Duration(), s.Start())
 	}
 	for i := 0; i < len(mask); i++ {

@@ -47,24 +47,22 @@ func TestHDF5Errors(t *testing.T) {
 	bits := func(v float64) uint64 { return math.Float64bits(v) }
 	for _, tc := range []struct {
 		why      string
-		old, new uint64 // the first of these 8 bytes in the file, and what replaces them
+		after    string // the first of the 8 bytes old after this text become new
+		old, new uint64
 		want     string
 	}{
-		{"spacing that is no rate", bits(1. / 256), bits(0.0123), "sample spacing of 0.0123 s"},
-		{"spacing NaN", bits(1. / 256), bits(math.NaN()), "sample spacing of NaN s"},
-		{"rate and duration disagree", bits(1. / 256), bits(1. / 512), "meta/Duration"},
-		{"number of samples", 1024, 1025, "Npoints"},
-		{"one of the starts", 1400000000, 1400000001, "want the same GPS time"},
+		{"spacing that is no rate", "", bits(1. / 256), bits(0.0123), "sample spacing of 0.0123 s"},
+		{"spacing NaN", "", bits(1. / 256), bits(math.NaN()), "sample spacing of NaN s"},
+		{"rate and duration disagree", "", bits(1. / 256), bits(1. / 512), "meta/Duration"},
+		{"number of samples", "Npoints", 1024, 1025, "Npoints"},
+		{"start of samples or file", "", 1400000000, 1400000001, "want the same GPS time"},
+		{"start of flags", "DQmask", 1400000000, 1400000001, "got 4 flags of 1 s from GPS 1400000001.000000"},
+		{"spacing of flags", "DQmask", bits(1), bits(2), "got 4 flags of 2 s"},
 	} {
 		var from, to [8]byte
 		binary.LittleEndian.PutUint64(from[:], tc.old)
 		binary.LittleEndian.PutUint64(to[:], tc.new)
-		// The dataspace of the samples holds their number too; the attribute's
-		// comes after its name.
-		at := 0
-		if tc.why == "number of samples" {
-			at = bytes.Index(good, []byte("Npoints"))
-		}
+		at := bytes.Index(good, []byte(tc.after))
 		i := bytes.Index(good[at:], from[:])
 		if i < 0 {
 			t.Fatalf("%s: the file has no %d", tc.why, tc.old)
@@ -142,6 +140,7 @@ func TestTextErrors(t *testing.T) {
 		{"other site", "# site = L1\n", `x.txt:1: got strain of site "L1", want "H1"`},
 		{"two rates", "# rate = 4\n# rate = 8\n", `x.txt:2: got rate "8"`},
 		{"broken rate", "# rate = 0.5\n", `x.txt:1: got rate "0.5"`},
+		{"fraction of a rate", "# rate = 4.5\n", `x.txt:1: got rate "4.5"`},
 		{"broken start", "# start = 1e9\n", `x.txt:1: got time "1e9"`},
 		{"one time", "1 1\n", "x.txt:1: got one sample"},
 		{"uneven times", "10.0 1\n10.25 1\n10.6 1\n10.75 1\n", "x.txt:3: got time 0.600000000 s"},

@@ -234,7 +234,7 @@ func TestTreesThatRepeat(t *testing.T) {
 	if err == nil || !strings.Contains(err.Error(), "refer back") || visits > 3*children {
 		t.Errorf("after %d visits of a repeating tree: %v", visits, err)
 	}
-	err = walk(node(7, 0))
+	err = walk(slices.Concat(node(7, 0), make([]byte, 2*size)))
 	if err == nil || !strings.Contains(err.Error(), "level: got 7, want 6") {
 		t.Errorf("a node that is its own child: %v", err)
 	}
