@@ -53,17 +53,26 @@ func TestSpheroidalEquation(t *testing.T) {
 			continue
 		}
 		const s = spinWeight
-		norm := 0.0
+		norm, overlap := 0.0, complex128(0)
+		sphere, err := sphericalHarmonic(tc.l, tc.m)
+		if err != nil {
+			t.Fatal(err)
+		}
 		const n = 400
 		for i := range n {
 			// Midpoints of cosθ: the trapezoid rule's error in θ is spectral.
 			theta := (float64(i) + 0.5) * math.Pi / n
 			v := h.at(theta)
-			norm += real(v*cmplx.Conj(v)) * 2 * math.Pi * math.Sin(theta) * math.Pi / n
+			area := 2 * math.Pi * math.Sin(theta) * math.Pi / n
+			norm += real(v*cmplx.Conj(v)) * area
+			overlap += v * cmplx.Conj(sphere.at(theta)) * complex(area, 0)
 		}
 		// The integrand is odd at the poles, so the rule is only O(n⁻²) there.
 		if math.Abs(norm-1) > 1e-4 {
 			t.Errorf("(%d,%d) c=%g: norm %.8f, want 1", tc.l, tc.m, tc.c, norm)
+		}
+		if real(overlap) < 0.3 || math.Abs(imag(overlap)) > 1e-5 {
+			t.Errorf("(%d,%d) c=%g: overlap with the sphere's function %.3g, want real and positive", tc.l, tc.m, tc.c, overlap)
 		}
 		for _, theta := range []float64{0.4, 1.3, 2.2} {
 			const d = 1e-3

@@ -62,6 +62,31 @@ func TestModeTrack(t *testing.T) {
 	t.Logf("largest relative difference %.1e; finest piece %d steps", worst, finest)
 }
 
+// TestModeTrackOnAxis: seen along the axis only m = 2 (north) and m = -2 (south)
+// are left, and the frequency does not care.
+func TestModeTrackOnAxis(t *testing.T) {
+	for _, m := range []int{-2, -1, 1, 2} {
+		track, err := NewModeTrack(3, m, 1, 0)
+		if err != nil {
+			t.Fatal(err)
+		}
+		omega, north, south, err := track.At(0.83)
+		if err != nil {
+			t.Fatal(err)
+		}
+		mode, err := QuasiNormalMode(3, m, 1, 0.83)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if cmplx.Abs(omega/mode.Omega-1) > 1e-8 {
+			t.Errorf("m=%d: ω = %.10f, want %.10f", m, omega, mode.Omega)
+		}
+		if (cmplx.Abs(north) > 1e-12) != (m == 2) || (cmplx.Abs(south) > 1e-12) != (m == -2) {
+			t.Errorf("m=%d: S = %.3g and %.3g on the axis", m, north, south)
+		}
+	}
+}
+
 func TestModeTrackRange(t *testing.T) {
 	track, err := NewModeTrack(2, 2, 0, 1)
 	if err != nil {
