@@ -244,7 +244,7 @@ func (r *runner) prepare(st *stage, logX float64) {
 	enough := 2*len(st.l) >= r.set.LivePoints
 	if needs := math.Exp(-logX) > priorCalls; needs && enough && (r.bound == nil || r.boundX-logX > rebuildStep) {
 		rng := random.New(r.set.Seed, "bound", r.run, uint64(r.out.Iterations))
-		if b := newBound(st.u, r.dim, logX, r.set.Periodic, rng.Rand); b != nil {
+		if b := newBound(st.u, r.dim, logX, r.set.Periodic, r.bound, rng.Rand); b != nil {
 			r.bound, r.boundX = b, logX
 		}
 	}

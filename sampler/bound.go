@@ -22,6 +22,7 @@ type bound struct {
 	frame      frame
 	dim        int
 	points     []float64 // n×dim, the points it was built from, frame coordinates
+	pooled     scatter   // covariance within the clusters
 	ellipsoids []ellipsoid
 	cumulative []float64 // running sum of the ellipsoids' shares of the volume
 	weight     []float64 // running sum of their shares of the points
@@ -29,43 +30,107 @@ type bound struct {
 }
 
 // newBound fits a bound to n×dim points of the cube that are spread uniformly
-// over a prior volume of about exp(logX). It returns nil if they are too few or
-// degenerate.
-func newBound(points []float64, dim int, logX float64, periodic []bool, rng *rand.Rand) *bound {
+// over a prior volume of about exp(logX): the number of ellipsoids is the one
+// with the least volume. last, which may be nil, is the bound before. newBound
+// returns nil if the points are degenerate.
+func newBound(points []float64, dim int, logX float64, periodic []bool, last *bound, rng *rand.Rand) *bound {
 	n := len(points) / dim
-	if n < leastMembers(dim) {
-		return nil
-	}
 	b := &bound{frame: newFrame(points, dim, periodic), dim: dim, points: make([]float64, n*dim)}
-	members := make([]int, n)
 	for i := range n {
-		members[i] = i
 		b.frame.into(points[i*dim:(i+1)*dim], b.points[i*dim:(i+1)*dim])
 	}
-	b.ellipsoids = cluster(b.points, dim, members, logX-math.Log(float64(n)), rng)
-	if b.ellipsoids == nil {
+	one := partition{k: 1, of: make([]int, n)}
+	one.pooled = withinCovariance(b.points, dim, 1, one.of)
+	best, volume := b.fit(one, rng)
+	if best == nil {
 		return nil
 	}
-	b.enlarge(rng)
+	b.pooled = one.pooled
+	if volume > logX+tightEnough {
+		before := 0
+		metrics := []scatter{one.pooled}
+		if last != nil {
+			before = len(last.ellipsoids)
+			metrics = append(metrics, last.pooled)
+		}
+		for i, k := range candidates(n, dim, before) {
+			p, ok := split(b.points, dim, k, metrics[i%len(metrics)], rng)
+			if !ok {
+				continue
+			}
+			if es, v := b.fit(p, rng); es != nil && v < volume {
+				best, volume = es, v
+				b.pooled = p.pooled
+			}
+		}
+	}
+	b.ellipsoids = best
+	b.enlarge(foldRounds, rng)
 	b.measure(rng)
 	return b
 }
 
-// enlarge sets the radii: each ellipsoid first just holds its members, and then
-// grows by the factor of its cross-validation, in which a point that another
-// ellipsoid holds is held.
-func (b *bound) enlarge(rng *rand.Rand) {
-	for c := range b.ellipsoids {
-		e := &b.ellipsoids[c]
-		e.radius2 = hold(b.points, b.dim, e)
+// fit returns the ellipsoids of a partition and the log of their total volume,
+// with splitGain for each added. They are grown by one round of
+// cross-validation in the volume, but not yet in themselves.
+func (b *bound) fit(p partition, rng *rand.Rand) ([]ellipsoid, float64) {
+	t := &bound{dim: b.dim, points: b.points, pooled: p.pooled}
+	for _, m := range p.members() {
+		e, ok := fitEllipsoid(b.points, b.dim, m, p.pooled)
+		if !ok {
+			return nil, math.Inf(1)
+		}
+		t.ellipsoids = append(t.ellipsoids, e)
 	}
+	plain := append([]ellipsoid(nil), t.ellipsoids...)
+	t.enlarge(1, rng)
+	return plain, totalVolume(t.ellipsoids) + splitGain*float64(len(plain))
+}
+
+// enlarge grows the ellipsoids, which just hold their members, by the factors
+// of their cross-validations.
+func (b *bound) enlarge(rounds int, rng *rand.Rand) {
 	grow := make([]float64, len(b.ellipsoids))
 	for c := range b.ellipsoids {
-		grow[c] = crossValidate(b.points, b.dim, &b.ellipsoids[c], foldRounds, func(x []float64) bool { return b.held(x, c) }, rng)
+		grow[c] = b.crossValidate(c, rounds, rng)
 	}
 	for c := range b.ellipsoids {
 		b.ellipsoids[c].radius2 *= grow[c]
 	}
+}
+
+// crossValidate leaves out parts of the members of ellipsoid c in turn, fits the
+// rest alone, and returns the factor by which the squared radius of such a fit
+// must grow, at most, to hold the points it has not seen and that no other
+// ellipsoid holds. It is at least that of a shell with margin/n of the volume.
+func (b *bound) crossValidate(c, rounds int, rng *rand.Rand) float64 {
+	dim := b.dim
+	e := &b.ellipsoids[c]
+	n := len(e.members)
+	grow := math.Pow(1+margin/float64(n), 2/float64(dim))
+	order := append([]int(nil), e.members...)
+	rest := make([]int, 0, n)
+	for range rounds {
+		rng.Shuffle(n, func(i, j int) { order[i], order[j] = order[j], order[i] })
+		for f := range folds {
+			lo, hi := f*n/folds, (f+1)*n/folds
+			if lo == hi || hi-lo == n {
+				continue
+			}
+			rest = append(append(rest[:0], order[:lo]...), order[hi:]...)
+			fit, ok := fitEllipsoid(b.points, dim, rest, b.pooled)
+			if !ok {
+				continue
+			}
+			for _, i := range order[lo:hi] {
+				x := b.points[i*dim : (i+1)*dim]
+				if d := fit.distance2(x, math.Inf(1)) / fit.radius2; d > grow && !b.held(x, c) {
+					grow = d
+				}
+			}
+		}
+	}
+	return grow
 }
 
 // held reports whether an ellipsoid other than number c holds x.
@@ -76,6 +141,18 @@ func (b *bound) held(x []float64, c int) bool {
 		}
 	}
 	return false
+}
+
+func totalVolume(es []ellipsoid) float64 {
+	top := math.Inf(-1)
+	for i := range es {
+		top = max(top, es[i].logVolume())
+	}
+	var sum float64
+	for i := range es {
+		sum += math.Exp(es[i].logVolume() - top)
+	}
+	return top + math.Log(sum)
 }
 
 // measure sets the shares of the ellipsoids and measures the volume of their

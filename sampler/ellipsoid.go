@@ -7,10 +7,35 @@ import (
 	"gonum.org/v1/gonum/mat"
 )
 
-// ellipsoid is the set |L⁻¹(x - m)|² <= radius2, with m the mean and L Lᵀ the
-// covariance of its members. Matrices are dim×dim by rows, lower triangular.
+// scatter is a symmetric dim×dim matrix by rows, of which the lower triangle is
+// kept: a sum of outer products, or a covariance.
+type scatter struct {
+	dim int
+	a   []float64
+}
+
+func newScatter(dim int) scatter { return scatter{dim, make([]float64, dim*dim)} }
+
+// add adds d dᵀ.
+func (s scatter) add(d []float64) {
+	for r, x := range d {
+		row := s.a[r*s.dim : r*s.dim+r+1]
+		for k := range row {
+			row[k] += x * d[k]
+		}
+	}
+}
+
+func (s scatter) scale(f float64) {
+	for i := range s.a {
+		s.a[i] *= f
+	}
+}
+
+// ellipsoid is the set |L⁻¹(x - m)|² <= radius2 with L Lᵀ a covariance. Matrices
+// are dim×dim by rows, lower triangular.
 type ellipsoid struct {
-	mean    []float64
+	mean    []float64 // m
 	factor  []float64 // L
 	inverse []float64 // L⁻¹
 	logDet  float64   // ln det L
@@ -18,46 +43,24 @@ type ellipsoid struct {
 	members []int // indices of the points it was fitted to
 }
 
-// fitEllipsoid returns the mean and covariance of the given rows of the n×dim
-// points, radius2 unset. It reports false if the covariance is singular.
-func fitEllipsoid(points []float64, dim int, members []int) (ellipsoid, bool) {
-	e := ellipsoid{mean: make([]float64, dim), members: members}
-	n := float64(len(members))
-	for _, i := range members {
-		for k, x := range points[i*dim : (i+1)*dim] {
-			e.mean[k] += x
-		}
-	}
-	for k := range e.mean {
-		e.mean[k] /= n
-	}
-	cov := make([]float64, dim*dim)
-	d := make([]float64, dim)
-	for _, i := range members {
-		row := points[i*dim : (i+1)*dim]
-		for k, x := range row {
-			d[k] = x - e.mean[k]
-		}
-		for r := range dim {
-			c := cov[r*dim : r*dim+r+1]
-			for k := range c {
-				c[k] += d[r] * d[k]
-			}
-		}
-	}
+// ellipsoid returns the ellipsoid of covariance s and the given mean, radius2
+// unset. It reports false if s is singular.
+func (s scatter) ellipsoid(mean []float64) (ellipsoid, bool) {
+	dim := s.dim
+	e := ellipsoid{mean: mean}
 	// Scaled to unit diagonal, so that parameters known to very different
 	// precision do not lose digits.
-	scale := make([]float64, dim)
+	width := make([]float64, dim)
 	for r := range dim {
-		scale[r] = math.Sqrt(cov[r*dim+r] / n)
-		if !(scale[r] > 0) {
+		width[r] = math.Sqrt(s.a[r*dim+r])
+		if !(width[r] > 0) {
 			return e, false
 		}
 	}
 	sym := mat.NewSymDense(dim, nil)
 	for r := range dim {
 		for k := 0; k <= r; k++ {
-			sym.SetSym(r, k, cov[r*dim+k]/(n*scale[r]*scale[k]))
+			sym.SetSym(r, k, s.a[r*dim+k]/(width[r]*width[k]))
 		}
 	}
 	var chol mat.Cholesky
@@ -69,18 +72,54 @@ func fitEllipsoid(points []float64, dim int, members []int) (ellipsoid, bool) {
 	if err := inverse.InverseTri(&lower); err != nil {
 		return e, false
 	}
-	e.factor = cov // reused
+	e.factor = make([]float64, dim*dim)
 	e.inverse = make([]float64, dim*dim)
 	for r := range dim {
-		for k := range dim {
-			if k > r {
-				e.factor[r*dim+k] = 0
-				continue
-			}
-			e.factor[r*dim+k] = lower.At(r, k) * scale[r]
-			e.inverse[r*dim+k] = inverse.At(r, k) / scale[k]
+		for k := 0; k <= r; k++ {
+			e.factor[r*dim+k] = lower.At(r, k) * width[r]
+			e.inverse[r*dim+k] = inverse.At(r, k) / width[k]
 		}
 		e.logDet += math.Log(e.factor[r*dim+r])
+	}
+	return e, true
+}
+
+// fitEllipsoid fits the given rows of the n×dim points: their mean, their
+// covariance drawn towards the pooled one as if a third of a point more had that, and
+// the least radius that holds them, but not less than if they filled it
+// uniformly (radius2 = dim + 2 in units of the covariance). So any number of
+// points has a fit. It reports false if the covariance is singular.
+func fitEllipsoid(points []float64, dim int, members []int, pooled scatter) (ellipsoid, bool) {
+	mean := make([]float64, dim)
+	n := float64(len(members))
+	for _, i := range members {
+		for k, x := range points[i*dim : (i+1)*dim] {
+			mean[k] += x
+		}
+	}
+	for k := range mean {
+		mean[k] /= n
+	}
+	cov := newScatter(dim)
+	d := make([]float64, dim)
+	for _, i := range members {
+		for k, x := range points[i*dim : (i+1)*dim] {
+			d[k] = x - mean[k]
+		}
+		cov.add(d)
+	}
+	weight := 0.3
+	for i := range cov.a {
+		cov.a[i] = (cov.a[i] + weight*pooled.a[i]) / (n + weight)
+	}
+	e, ok := cov.ellipsoid(mean)
+	if !ok {
+		return e, false
+	}
+	e.members = members
+	e.radius2 = float64(dim + 2)
+	for _, i := range members {
+		e.radius2 = max(e.radius2, e.distance2(points[i*dim:(i+1)*dim], math.Inf(1)))
 	}
 	return e, true
 }

@@ -139,7 +139,7 @@ func (w *worker) anywhere(b *bound, threshold, l float64, rng *rand.Rand) (float
 // random one in its metric, or the difference of two of its points.
 func (w *worker) along(b *bound, c int, rng *rand.Rand) {
 	e := &b.ellipsoids[c]
-	if rng.IntN(2) == 0 {
+	if len(e.members) < 2 || rng.IntN(2) == 0 {
 		direction(rng, w.tr)
 		for k := range w.tr {
 			w.tr[k] *= math.Sqrt(float64(b.dim + 2))
