@@ -44,6 +44,7 @@ type Cavity struct {
 	rRe, rIm       []float64 // barrier reflection
 	eRe, eIm       []float64 // echo sum at +omega
 	tRe, tIm       []float64 // echo sum at -omega
+	cos, sin       []float64 // phases
 	offsetIndex    int
 	echoPhaseIndex int
 }
@@ -126,6 +127,7 @@ func (c *Cavity) prepared() (*Cavity, error) {
 	c.rs, c.rRe, c.rIm = make([]float64, n), make([]float64, n), make([]float64, n)
 	c.eRe, c.eIm = make([]float64, n), make([]float64, n)
 	c.tRe, c.tIm = make([]float64, n), make([]float64, n)
+	c.cos, c.sin = make([]float64, n), make([]float64, n)
 	return c, nil
 }
 
@@ -173,9 +175,10 @@ func (c *Cavity) Fill(theta []float64, h *Polarizations) error {
 	late := theta[2] - c.start
 	law := theta[c.echoPhaseIndex+1:]
 	// Without reflection the signal is the ringdown's, bit for bit.
-	echoing := law[0] != 0
-	if echoing {
-		if err := c.echoes(theta, late); err != nil {
+	reach := 0
+	if law[0] != 0 {
+		var err error
+		if reach, err = c.echoes(theta, late); err != nil {
 			return err
 		}
 	}
@@ -184,23 +187,21 @@ func (c *Cavity) Fill(theta []float64, h *Polarizations) error {
 		if err != nil {
 			return err
 		}
-		if echoing {
-			h.addEchoing(w, c.grid, c.eRe, c.eIm, c.tRe, c.tIm)
-		} else {
-			h.add(w, c.grid)
-		}
+		h.addEchoing(w, c.grid, c.eRe[:reach], c.eIm[:reach], c.tRe[:reach], c.tIm[:reach])
+		h.add(w, c.grid, reach)
 	}
 	if late != 0 {
-		h.delay(late, c.grid)
+		h.delay(late, c.grid, c.cos, c.sin)
 	}
 	return nil
 }
 
-// echoes fills the echo sums at both signs of the frequency.
-func (c *Cavity) echoes(theta []float64, late float64) error {
+// echoes fills the echo sums at both signs of the frequency and returns how many
+// bins, from the first on, they differ from one in.
+func (c *Cavity) echoes(theta []float64, late float64) (int, error) {
 	mass, spin := theta[0], theta[1]
 	if err := c.barrier.SetSpin(spin); err != nil {
-		return err
+		return 0, err
 	}
 	scale := mass * constants.SolarMassSeconds
 	lnDistance := c.lnDistance(theta)
@@ -209,16 +210,31 @@ func (c *Cavity) echoes(theta []float64, late float64) error {
 	if delay > 0 && c.length > late {
 		terms += int(math.Min((c.length-late)/delay, 1e6))
 	}
-	x0 := kerr.SurfaceTortoise(spin, lnDistance)
-	sin, cos := math.Sincos(theta[c.echoPhaseIndex])
 	e := echoSum{
 		shift: 2 * kerr.HorizonFrequency(spin), temperature: kerr.HawkingTemperature(spin),
-		x0: x0, terms: uint(terms), phaseCos: cos, phaseSin: sin, law: theta[c.echoPhaseIndex+1:],
+		x0: kerr.SurfaceTortoise(spin, lnDistance), terms: uint(terms),
+		phase: theta[c.echoPhaseIndex], law: theta[c.echoPhaseIndex+1:],
 	}
 	step := 2 * math.Pi * c.grid.Step * scale
-	c.fillEchoSum(e, step, c.eRe, c.eIm)
-	c.fillEchoSum(e, -step, c.tRe, c.tIm)
-	return nil
+	low, high := c.barrier.Reach()
+	ahead, behind := c.binsBelow(high/step), c.binsBelow(-low/step)
+	c.fillEchoSum(e, step, c.eRe[:ahead], c.eIm[:ahead])
+	c.fillEchoSum(e, -step, c.tRe[:behind], c.tIm[:behind])
+	reach := max(ahead, behind)
+	fillOnes(c.eRe[ahead:reach], c.eIm[ahead:reach])
+	fillOnes(c.tRe[behind:reach], c.tIm[behind:reach])
+	return reach, nil
+}
+
+// binsBelow is how many bins of the grid lie below a multiple of its step.
+func (c *Cavity) binsBelow(multiple float64) int {
+	return max(0, min(int(math.Ceil(multiple))-c.grid.First, c.grid.Count))
+}
+
+func fillOnes(re, im []float64) {
+	for j := range re {
+		re[j], im[j] = 1, 0
+	}
 }
 
 // echoSum is what the sum needs to know at one point of parameter space, in
@@ -226,51 +242,53 @@ func (c *Cavity) echoes(theta []float64, late float64) error {
 type echoSum struct {
 	shift, temperature, x0 float64
 	terms                  uint // N + 1
-	phaseCos, phaseSin     float64
+	phase                  float64
 	law                    []float64
 }
 
 // fillEchoSum writes 1 + q + ... + q^N at omega_j = step (First + j).
 func (c *Cavity) fillEchoSum(e echoSum, step float64, re, im []float64) {
-	low, high := c.barrier.Reach()
-	// The bins within the barrier's reach are the first few of the grid.
-	limit := high
-	if step < 0 {
-		limit = -low
-	}
-	n := int(math.Ceil(limit/math.Abs(step))) - c.grid.First
-	n = max(0, min(n, c.grid.Count))
-	for j := n; j < len(re); j++ {
-		re[j], im[j] = 1, 0
-	}
+	n := len(re)
 	if n == 0 {
 		return
 	}
 	first := step * float64(c.grid.First)
 	rRe, rIm, rs := c.rRe[:n], c.rIm[:n], c.rs[:n]
+	cos, sin := c.cos[:n], c.sin[:n]
 	c.barrier.Reflection(first, step, rRe, rIm)
 	c.law.fill(e.law, e.temperature, first-e.shift, step, rs)
-	turn := newRotor(-2*e.x0*step, float64(c.grid.First)-e.shift/step)
-	re, im = re[:n], im[:n]
-	top := bits.Len(e.terms) - 2
+	fillTurns(e.phase, -2*e.x0*step, float64(c.grid.First)-e.shift/step, cos, sin)
+	im = im[:n]
 	for j := range re {
-		cos, sin := turn.next()
-		cos, sin = cos*e.phaseCos-sin*e.phaseSin, cos*e.phaseSin+sin*e.phaseCos
-		qr := rs[j] * (rRe[j]*cos - rIm[j]*sin)
-		qi := rs[j] * (rRe[j]*sin + rIm[j]*cos)
-		// The sum of the first s powers by doubling: sum_2s = sum_s (1 + q^s),
-		// sum_{s+1} = 1 + q sum_s. It has no singular point, unlike
-		// (1 - q^(N+1)) / (1 - q).
-		sr, si := 1.0, 0.0
-		pr, pi := qr, qi
-		for b := top; b >= 0; b-- {
-			sr, si = sr+sr*pr-si*pi, si+sr*pi+si*pr
-			pr, pi = pr*pr-pi*pi, 2*pr*pi
-			if e.terms>>b&1 == 1 {
-				sr, si = 1+sr*qr-si*qi, sr*qi+si*qr
-				pr, pi = pr*qr-pi*qi, pr*qi+pi*qr
-			}
+		qr := rs[j] * (rRe[j]*cos[j] - rIm[j]*sin[j])
+		qi := rs[j] * (rRe[j]*sin[j] + rIm[j]*cos[j])
+		switch square := qr*qr + qi*qi; {
+		case square < 1e-32 || e.terms == 1:
+			re[j], im[j] = 1, 0
+		case square < 1e-8 && e.terms >= 4:
+			// To q^3; the next is below 1e-16.
+			sr, si := 1+qr, qi
+			sr, si = 1+qr*sr-qi*si, qr*si+qi*sr
+			re[j], im[j] = 1+qr*sr-qi*si, qr*si+qi*sr
+		default:
+			re[j], im[j] = geometricSum(qr, qi, e.terms)
 		}
-		re[j], im[j] = sr, si
 	}
+}
+
+// geometricSum is the sum of the first terms powers of q, from q^0 on, by
+// doubling: sum_2s = sum_s (1 + q^s), sum_{s+1} = 1 + q sum_s. It has no singular
+// point, unlike (1 - q^terms) / (1 - q).
+func geometricSum(qr, qi float64, terms uint) (sr, si float64) {
+	sr = 1
+	pr, pi := qr, qi
+	for b := bits.Len(terms) - 2; b >= 0; b-- {
+		sr, si = sr+sr*pr-si*pi, si+sr*pi+si*pr
+		pr, pi = pr*pr-pi*pi, 2*pr*pi
+		if terms>>b&1 == 1 {
+			sr, si = 1+sr*qr-si*qi, sr*qi+si*qr
+			pr, pi = pr*qr-pi*qi, pr*qi+pi*qr
+		}
+	}
+	return sr, si
 }

@@ -52,12 +52,12 @@ func fillExponential(scale, rate, k0, dk float64, rs []float64) {
 	up, down := math.Exp(rate*step), math.Exp(-rate*step)
 	for j := 0; j < len(rs); {
 		k := k0 + float64(j)*dk
-		end := min(j+rotorSpan, len(rs))
+		end := min(j+turnSpan, len(rs))
 		ratio := down
 		if k*dk < 0 {
 			// |k| shrinks, as far as the sign lasts.
 			ratio = up
-			if left := -k / dk; left < rotorSpan {
+			if left := -k / dk; left < turnSpan {
 				end = min(end, j+int(left)+1)
 			}
 		}

@@ -11,6 +11,7 @@ type Ringdown struct {
 	start      float64 // s after the event time, where t = 0 lies
 	ringing    *ringing
 	parameters []Parameter
+	cos, sin   []float64 // scratch space
 }
 
 var _ Model = (*Ringdown)(nil)
@@ -38,7 +39,8 @@ func newRingdown(s Settings) (Model, error) {
 	if err != nil {
 		return nil, err
 	}
-	return &Ringdown{grid: s.Grid, start: s.Start, ringing: ringing, parameters: parameters}, nil
+	r := &Ringdown{grid: s.Grid, start: s.Start, ringing: ringing, parameters: parameters}
+	return r.Clone(), nil
 }
 
 // Parameters implements Model.
@@ -52,8 +54,12 @@ func (r *Ringdown) Derive(theta, out []float64) error {
 	return r.ringing.derive(theta[0], theta[1], out)
 }
 
-// Clone implements Model. A ringdown keeps no scratch space.
-func (r *Ringdown) Clone() Model { return r }
+// Clone implements Model.
+func (r *Ringdown) Clone() Model {
+	twin := *r
+	twin.cos, twin.sin = make([]float64, r.grid.Count), make([]float64, r.grid.Count)
+	return &twin
+}
 
 // Fill implements Model.
 func (r *Ringdown) Fill(theta []float64, h *Polarizations) error {
@@ -63,10 +69,10 @@ func (r *Ringdown) Fill(theta []float64, h *Polarizations) error {
 		if err != nil {
 			return err
 		}
-		h.add(w, r.grid)
+		h.add(w, r.grid, 0)
 	}
 	if late := theta[2] - r.start; late != 0 {
-		h.delay(late, r.grid)
+		h.delay(late, r.grid, r.cos, r.sin)
 	}
 	return nil
 }

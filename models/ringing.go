@@ -164,16 +164,17 @@ func (h *Polarizations) clear() {
 	clear(h.CrossIm)
 }
 
-// add adds one mode's transform over the grid.
-func (h *Polarizations) add(w wave, g Grid) {
+// add adds one mode's transform over the grid's bins from onwards.
+func (h *Polarizations) add(w wave, g Grid, from int) {
 	pr, pi := real(w.p)/2, imag(w.p)/2
 	xr, xi := real(w.x)/2, imag(w.x)/2
 	y2 := w.omegaIm * w.omegaIm
 	step := 2 * math.Pi * g.Step
-	plusRe, plusIm := h.PlusRe[:g.Count], h.PlusIm[:g.Count]
-	crossRe, crossIm := h.CrossRe[:g.Count], h.CrossIm[:g.Count]
+	plusRe, plusIm := h.PlusRe[from:g.Count], h.PlusIm[from:g.Count]
+	crossRe, crossIm := h.CrossRe[from:g.Count], h.CrossIm[from:g.Count]
+	plusIm, crossRe, crossIm = plusIm[:len(plusRe)], crossRe[:len(plusRe)], crossIm[:len(plusRe)]
 	for j := range plusRe {
-		angular := float64(g.First+j) * step
+		angular := float64(g.First+from+j) * step
 		near, far := angular-w.omegaRe, angular+w.omegaRe
 		vi, ui := -1/(near*near+y2), -1/(far*far+y2)
 		vr, ur := vi*w.omegaIm, ui*w.omegaIm
@@ -187,21 +188,21 @@ func (h *Polarizations) add(w wave, g Grid) {
 	}
 }
 
-// addEchoing is add for a mode whose spectrum is multiplied by an echo sum. In
-// the convention exp(-i omega t) the resonance seen at f > 0 is the conjugate of
-// the mode at omega = +2 pi f, and the tail is the mode itself at omega =
-// -2 pi f; so V is multiplied by conj(e) with e the sum at +2 pi f, and U by t,
-// the sum at -2 pi f.
+// addEchoing is add for the bins before len(eRe), of a mode whose spectrum is
+// multiplied by an echo sum. In the convention exp(-i omega t) the resonance
+// seen at f > 0 is the conjugate of the mode at omega = +2 pi f, and the tail is
+// the mode itself at omega = -2 pi f; so V is multiplied by conj(e) with e the
+// sum at +2 pi f, and U by t, the sum at -2 pi f.
 func (h *Polarizations) addEchoing(w wave, g Grid, eRe, eIm, tRe, tIm []float64) {
 	pr, pi := real(w.p)/2, imag(w.p)/2
 	xr, xi := real(w.x)/2, imag(w.x)/2
 	y2 := w.omegaIm * w.omegaIm
 	step := 2 * math.Pi * g.Step
-	plusRe, plusIm := h.PlusRe[:g.Count], h.PlusIm[:g.Count]
-	crossRe, crossIm := h.CrossRe[:g.Count], h.CrossIm[:g.Count]
-	eRe, eIm = eRe[:g.Count], eIm[:g.Count]
-	tRe, tIm = tRe[:g.Count], tIm[:g.Count]
-	for j := range plusRe {
+	n := len(eRe)
+	plusRe, plusIm := h.PlusRe[:n], h.PlusIm[:n]
+	crossRe, crossIm := h.CrossRe[:n], h.CrossIm[:n]
+	eIm, tRe, tIm = eIm[:n], tRe[:n], tIm[:n]
+	for j := range eRe {
 		angular := float64(g.First+j) * step
 		near, far := angular-w.omegaRe, angular+w.omegaRe
 		vi, ui := -1/(near*near+y2), -1/(far*far+y2)
@@ -218,11 +219,12 @@ func (h *Polarizations) addEchoing(w wave, g Grid, eRe, eIm, tRe, tIm []float64)
 	}
 }
 
-// delay multiplies h by exp(-2 pi i f seconds): the same signal, later.
-func (h *Polarizations) delay(seconds float64, g Grid) {
-	turn := newRotor(-2*math.Pi*g.Step*seconds, float64(g.First))
+// delay multiplies h by exp(-2 pi i f seconds): the same signal, later. cos and
+// sin are scratch space of the grid's length.
+func (h *Polarizations) delay(seconds float64, g Grid, cos, sin []float64) {
+	fillTurns(0, -2*math.Pi*g.Step*seconds, float64(g.First), cos, sin)
 	for j := range g.Count {
-		c, s := turn.next()
+		c, s := cos[j], sin[j]
 		h.PlusRe[j], h.PlusIm[j] = h.PlusRe[j]*c-h.PlusIm[j]*s, h.PlusRe[j]*s+h.PlusIm[j]*c
 		h.CrossRe[j], h.CrossIm[j] = h.CrossRe[j]*c-h.CrossIm[j]*s, h.CrossRe[j]*s+h.CrossIm[j]*c
 	}

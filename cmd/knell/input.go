@@ -57,7 +57,7 @@ func readConfig(c *cli.Context, needFile bool) (*event.Config, error) {
 		if c.Int64("seed") < 0 {
 			return nil, &usageError{"--seed must be 0 or more"}
 		}
-		config.Seed = uint64(c.Int64("seed"))
+		config.SetSeed(uint64(c.Int64("seed")))
 	}
 	return config, nil
 }

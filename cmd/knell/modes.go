@@ -45,24 +45,27 @@ func modesCommand() *cli.Command {
 				}
 			}
 			if c.Bool("json") {
-				return printJSON(c, doc)
+				return doc.WriteJSON(c.App.Writer)
 			}
-			return report.ModesTable(c.App.Writer, doc)
+			return report.ModesTable(c.App.Writer, &doc)
 		},
 	}
 }
 
 // modeEntry is a mode's line; mass 0 leaves out what needs one.
 func modeEntry(m kerr.Mode, mass float64) report.Mode {
+	pair := func(z complex128) [2]report.Number {
+		return [2]report.Number{report.Number(real(z)), report.Number(imag(z))}
+	}
 	e := report.Mode{
-		L: m.L, M: m.M, N: m.N, Spin: m.Spin,
-		Omega:      [2]float64{real(m.Omega), imag(m.Omega)},
-		Separation: [2]float64{real(m.Separation), imag(m.Separation)},
+		L: m.L, M: m.M, N: m.N, Spin: report.Number(m.Spin),
+		Omega: pair(m.Omega), Separation: pair(m.Separation),
 	}
 	if mass > 0 {
 		scale := mass * constants.SolarMassSeconds
-		frequency, damping := real(m.Omega)/(2*math.Pi*scale), -scale/imag(m.Omega)
-		e.FrequencyHz, e.DampingTimeS = &frequency, &damping
+		frequency := report.Number(real(m.Omega) / (2 * math.Pi * scale))
+		damping := report.Number(-scale / imag(m.Omega))
+		e.Frequency, e.DampingTime = &frequency, &damping
 	}
 	return e
 }

@@ -42,18 +42,21 @@ func weigh(c *cli.Context) error {
 		return err
 	}
 	// Claimed before the work, so that an unwritable place costs no run.
-	directory, err := report.ClaimDirectory(c.String("out"), config.Slug(), c.Bool("replace"))
+	directory, err := claimDirectory(c.String("out"), config.Slug(), c.Bool("replace"))
 	if err != nil {
-		return &usageError{err.Error()}
+		return err
 	}
 	options := event.Options{Version: c.App.Version, Workers: c.Int("workers")}
 	if !c.Bool("quiet") {
 		meter := report.NewMeter(c.App.ErrWriter)
-		defer meter.Close()
+		defer meter.Done()
 		options.Progress = func(p event.Progress) {
+			label := p.Hypothesis
+			if p.Count > 1 {
+				label = fmt.Sprintf("%s (%d of %d)", p.Hypothesis, p.Index+1, p.Count)
+			}
 			meter.Update(report.Progress{
-				Label: p.Hypothesis, Index: p.Index, Count: p.Count,
-				LogEvidence: p.LogEvidence, LogEvidenceError: p.LogEvidenceError,
+				Label: label, LogEvidence: p.LogEvidence, Error: p.LogEvidenceError,
 				Calls: p.Calls, Fraction: p.Fraction,
 			})
 		}
@@ -66,7 +69,7 @@ func weigh(c *cli.Context) error {
 		return err
 	}
 	if c.Bool("json") {
-		err = printJSON(c, result)
+		err = result.WriteJSON(c.App.Writer)
 	} else {
 		err = report.Table(c.App.Writer, result)
 		if err == nil {

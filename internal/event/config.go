@@ -8,6 +8,7 @@ type Config struct {
 	Folder string // relative paths in it start here
 	Source []byte // as read
 	lines  lineIndex
+	header []string // lines that the command line adds to Source
 
 	Title string
 	Seed  uint64

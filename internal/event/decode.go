@@ -108,6 +108,9 @@ func (d *decoder) config(c *Config, t *table) {
 	if d.err != nil {
 		return
 	}
+	if c.Injection != nil {
+		d.checkInjection(c)
+	}
 	if c.Event.TimeAt != "" && !c.hasSite(c.Event.TimeAt) {
 		d.fail("event.time_at", show(c.Event.TimeAt), "the code of a [[site]], or no such key for the geocentre")
 	}
@@ -279,9 +282,7 @@ func (d *decoder) injection(t *table) *Injection {
 	in := &Injection{Values: map[string]float64{}}
 	in.Model = t.choiceOr("model", "", models.Names())
 	in.Modes = t.texts("modes", `a list of modes, e.g. ["2,2,0"]`)
-	if t.has("reflectivity_law") {
-		in.Reflectivity = t.choiceOr("reflectivity_law", "", models.ReflectivityNames())
-	}
+	in.Reflectivity = t.textOr("reflectivity", "", "one of "+strings.Join(models.ReflectivityNames(), ", "))
 	in.Parity = t.textOr("parity", "", `"odd" or "even"`)
 	values := t.sub("values", "a table of numbers by parameter")
 	for _, name := range sortedKeys(values.values) {
@@ -289,6 +290,32 @@ func (d *decoder) injection(t *table) *Injection {
 	}
 	t.finish()
 	return in
+}
+
+// checkInjection compares the injection's values with its model's parameters.
+func (d *decoder) checkInjection(c *Config) {
+	list, err := models.Describe(c.injectionSettings())
+	if err != nil {
+		d.setting(err, "injection")
+		return
+	}
+	known := map[string]bool{}
+	for _, p := range list {
+		known[p.Name] = true
+		v, given := c.Injection.Values[p.Name]
+		key := "injection.values." + p.Name
+		switch {
+		case !given && !p.HasDefault:
+			d.fail(key, "nothing", fmt.Sprintf("a number (%s)", p.Note))
+		case given && !(v >= p.Low && v <= p.High):
+			d.fail(key, fmt.Sprint(v), fmt.Sprintf("%g to %g", p.Low, p.High))
+		}
+	}
+	for _, name := range sortedKeys(c.Injection.Values) {
+		if !known[name] {
+			d.fail("injection.values."+name, fmt.Sprint(c.Injection.Values[name]), "a parameter of the model "+c.Injection.Model+": "+names(list))
+		}
+	}
 }
 
 var hypothesisName = regexp.MustCompile(`^[A-Za-z0-9][A-Za-z0-9_-]{0,63}$`)

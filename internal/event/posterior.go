@@ -15,20 +15,22 @@ import (
 // posterior file's columns: every parameter in its physical unit, the derived
 // quantities, the log-likelihood over noise and absolute.
 func (p *Prepared) summarise(h *hypothesis, o *sampler.Outcome) (report.Hypothesis, report.Posterior, error) {
+	largest := math.Inf(-1)
+	for _, l := range o.LogLikelihood {
+		largest = max(largest, l)
+	}
 	entry := report.Hypothesis{
 		Name: h.Name, Model: h.Model, Dimensions: h.set.Dim(),
-		LogEvidence:          o.LogEvidence + p.likelihood.LogNoise(),
-		LogEvidenceError:     o.LogEvidenceError,
-		LogEvidenceOverNoise: o.LogEvidence,
-		Calls:                o.Calls, LivePoints: o.LivePoints,
-		Information: o.Information, EffectiveSamples: o.EffectiveSamples,
-		InsertionRankP: o.InsertionRankP,
-		Status:         o.Status.String(), Partial: o.Partial,
+		LogEvidence:      report.Number(o.LogEvidence + p.likelihood.LogNoise()),
+		LogEvidenceError: report.Number(o.LogEvidenceError),
+		LogEvidenceOver:  report.Number(o.LogEvidence),
+		Calls:            o.Calls, LivePoints: o.LivePoints,
+		Information:      report.Number(o.Information),
+		EffectiveSamples: report.Number(o.EffectiveSamples),
+		InsertionRankP:   report.Number(o.InsertionRankP),
+		Status:           o.Status.String(), Partial: o.Partial,
 		Verdict: o.Verdict, Warnings: o.Warnings,
-		MaxLogLikelihoodOverNoise: math.Inf(-1),
-	}
-	for _, l := range o.LogLikelihood {
-		entry.MaxLogLikelihoodOverNoise = max(entry.MaxLogLikelihoodOverNoise, l)
+		MaxLogLikelihood: report.Number(largest),
 	}
 
 	columns := append(append([]models.Parameter(nil), h.model.Parameters()...), h.model.Derived()...)
@@ -53,10 +55,13 @@ func (p *Prepared) summarise(h *hypothesis, o *sampler.Outcome) (report.Hypothes
 	}
 	for j, c := range columns {
 		q := weightedQuantiles(weighted[j], weights, 0.05, 0.5, 0.95)
-		entry.Summary = append(entry.Summary, report.Summary{Parameter: c.Name, Unit: c.Unit, Low90: q[0], Median: q[1], High90: q[2]})
+		entry.Summary = append(entry.Summary, report.ParameterSummary{
+			Parameter: c.Name, Unit: c.Unit,
+			Low90: report.Number(q[0]), Median: report.Number(q[1]), High90: report.Number(q[2]),
+		})
 	}
 
-	chosen := o.EqualWeight(p.Config.Seed)
+	_, chosen := o.EqualWeight(p.Config.Seed, 0)
 	posterior := report.Posterior{Name: h.Name, Values: newColumns(len(columns)+2, len(chosen))}
 	for j, c := range columns {
 		posterior.Columns = append(posterior.Columns, c.Name)

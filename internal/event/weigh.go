@@ -32,7 +32,7 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 	c := p.Config
 	w := &report.Weighing{
 		Event: c.Title, Seed: c.Seed, Version: o.Version,
-		LogEvidenceNoise: p.likelihood.LogNoise(),
+		LogEvidenceNoise: report.Number(p.likelihood.LogNoise()),
 		Analysis:         p.analysis(),
 		Sites:            p.sites,
 		Cautions:         append([]string(nil), p.Notes...),
@@ -68,7 +68,7 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 		if err != nil {
 			return nil, nil, fmt.Errorf("hypothesis %s: %w", h.Name, err)
 		}
-		entry.Seconds = seconds
+		entry.Seconds = report.Number(seconds)
 		w.Partial = w.Partial || outcome.Partial
 		w.Hypotheses = append(w.Hypotheses, entry)
 		posteriors = append(posteriors, posterior)
@@ -77,8 +77,8 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 		for _, b := range w.Hypotheses[:i] {
 			w.Ratios = append(w.Ratios, report.Ratio{
 				For: a.Name, Against: b.Name,
-				LogBayesFactor: a.LogEvidenceOverNoise - b.LogEvidenceOverNoise,
-				Error:          math.Hypot(a.LogEvidenceError, b.LogEvidenceError),
+				LogBayesFactor: a.LogEvidenceOver - b.LogEvidenceOver,
+				Error:          report.Number(math.Hypot(float64(a.LogEvidenceError), float64(b.LogEvidenceError))),
 			})
 		}
 	}
@@ -86,17 +86,24 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 	return w, posteriors, nil
 }
 
-// cautions are what a reader of any ratio must know, and what is particular to
-// this one.
+// cautions are the doubts particular to this result; report adds what holds of
+// every evidence ratio.
 func cautions(w *report.Weighing) []string {
-	list := []string{
-		"An evidence ratio depends on the priors: a wider prior on a parameter that one hypothesis alone has lowers that hypothesis's evidence.",
-		"The ratio compares these hypotheses with each other under stationary Gaussian noise; neither need be true. A claim needs a background: the same weighing on stretches without an event.",
-	}
+	var list []string
 	for _, r := range w.Ratios {
-		if math.Abs(r.LogBayesFactor) < 3*r.Error {
-			list = append(list, fmt.Sprintf("The sign of ln B for %s over %s is within three standard errors of zero: run with a smaller evidence_error before quoting it.", r.For, r.Against))
+		if math.Abs(float64(r.LogBayesFactor)) < 3*float64(r.Error) {
+			list = append(list, fmt.Sprintf("the sign of ln B for %s over %s is within three standard errors of zero: ask for a smaller evidence_error before quoting it", r.For, r.Against))
 		}
 	}
 	return list
+}
+
+// analysis is the report's account of the analysed stretch.
+func (p *Prepared) analysis() report.Analysis {
+	a := p.Config.Analysis
+	return report.Analysis{
+		Time: report.Number(p.geocentre), Start: report.Number(a.Start), SampleRate: report.Number(a.SampleRate),
+		Duration: report.Number(a.Duration), Gate: report.Number(a.Gate),
+		Band: [2]report.Number{report.Number(a.Low), report.Number(a.High)},
+	}
 }

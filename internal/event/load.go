@@ -1,0 +1,129 @@
+package event
+
+import (
+	"fmt"
+	"path/filepath"
+
+	"knell/internal/report"
+	"knell/likelihood"
+	"knell/likelihood/site"
+	"knell/likelihood/strain"
+)
+
+// Prepared is an event with its data read and its hypotheses built.
+type Prepared struct {
+	Config     *Config
+	Notes      []string // what the reader of a result must know about the data
+	likelihood *likelihood.Gaussian
+	hypotheses []*hypothesis
+	sites      []report.Site
+	geocentre  float64 // GPS s of the event at the geocentre
+}
+
+// Load reads the data and builds the likelihood and the hypotheses. What the user
+// gave wrongly is an *InputError.
+func Load(c *Config) (*Prepared, error) {
+	p := &Prepared{Config: c}
+	detectors := make([]site.Site, len(c.Sites))
+	for i, s := range c.Sites {
+		d, err := s.detector()
+		if err != nil {
+			return nil, c.fault(fmt.Sprintf("site[%d].geometry", i), err)
+		}
+		detectors[i] = d
+	}
+	e := c.Event
+	p.geocentre = e.Time
+	for i, s := range c.Sites {
+		if s.Code == e.TimeAt {
+			p.geocentre -= detectors[i].Delay(e.RightAscension, e.Declination, e.Time)
+		}
+	}
+	data := make([]likelihood.Site, len(c.Sites))
+	for i := range c.Sites {
+		var err error
+		if data[i], err = p.siteData(i, detectors[i]); err != nil {
+			return nil, err
+		}
+	}
+	var err error
+	p.likelihood, err = likelihood.New(data, likelihood.Settings{
+		SampleRate: c.Analysis.SampleRate, Gate: c.Analysis.gateSamples(), Grid: c.Analysis.grid(),
+	})
+	if err != nil {
+		return nil, c.fault("site", err)
+	}
+	if c.Analysis.Gate == 0 {
+		p.Notes = append(p.Notes, "No gate: signal from before the analysis start enters the likelihood as if the model described it.")
+	}
+	for _, h := range c.Hypotheses {
+		built, err := newHypothesis(h, c, p.likelihood)
+		if err != nil {
+			return nil, err
+		}
+		p.hypotheses = append(p.hypotheses, built)
+	}
+	return p, nil
+}
+
+// fault turns a complaint of a package below into one that points into the file.
+func (c *Config) fault(key string, err error) error {
+	return &InputError{File: c.File, Line: c.lines.line(key), Key: key, Err: err}
+}
+
+// path is a file named in the event file, which is relative to its folder.
+func (c *Config) path(name string) string {
+	if filepath.IsAbs(name) {
+		return name
+	}
+	return filepath.Join(c.Folder, name)
+}
+
+func (s Site) detector() (site.Site, error) {
+	if g := s.Geometry; g != nil {
+		return site.New(s.Code, g.Latitude, g.Longitude, g.Height, g.XAzimuth, g.YAzimuth, g.XTilt, g.YTilt)
+	}
+	return site.Lookup(s.Code)
+}
+
+// siteData reads one site's strain and noise and cuts its segment.
+func (p *Prepared) siteData(i int, d site.Site) (likelihood.Site, error) {
+	c, s, a := p.Config, p.Config.Sites[i], p.Config.Analysis
+	key := fmt.Sprintf("site[%d]", i)
+	e := c.Event
+	delay := d.Delay(e.RightAscension, e.Declination, p.geocentre)
+	plus, cross := d.Response(e.RightAscension, e.Declination, e.Polarization, p.geocentre)
+	series, source, err := p.series(i, plus, cross, delay)
+	if err != nil {
+		return likelihood.Site{}, err
+	}
+	start := p.geocentre + a.Start + delay
+	if series, err = series.Stretch(start); err != nil {
+		return likelihood.Site{}, c.fault(key, err)
+	}
+	rate := series.SampleRate
+	if series, err = strain.Condition(series, a.SampleRate, a.Low); err != nil {
+		return likelihood.Site{}, c.fault(key, err)
+	}
+	if high := strain.PassHigh * a.SampleRate / 2; rate > a.SampleRate && a.High > high {
+		return likelihood.Site{}, c.fault("analysis.band", fmt.Errorf("%g Hz at a sample rate of %g Hz, want at most %g Hz: above it lies the filter that lowers the rate of %s from %g Hz", a.High, a.SampleRate, high, s.Code, rate))
+	}
+	// The first sample outside the gate is the first at or after the start.
+	from := series.Index(start) - a.gateSamples()
+	to := from + a.samples()
+	if err := series.Check(series.Time(from), series.Time(to)); err != nil {
+		return likelihood.Site{}, c.fault(key, fmt.Errorf("the analysed segment (analysis.gate and analysis.duration around analysis.start): %w", err))
+	}
+	noise, described, err := p.density(key, s, series, from, to)
+	if err != nil {
+		return likelihood.Site{}, err
+	}
+	p.sites = append(p.sites, report.Site{
+		Code: s.Code, Strain: source, Noise: described, Delay: report.Number(delay),
+		AntennaPlus: report.Number(plus), AntennaCross: report.Number(cross),
+	})
+	return likelihood.Site{
+		Code: s.Code, Strain: series.Values[from:to], Density: noise, Plus: plus, Cross: cross,
+		Arrival: series.Offset(start) - float64(from)/series.SampleRate,
+	}, nil
+}
