@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"math/rand/v2"
 	"slices"
 
 	"knell/internal/random"
@@ -243,8 +244,10 @@ func (r *runner) batch(ctx context.Context) (bool, error) {
 func (r *runner) prepare(st *stage, logX float64) {
 	enough := 2*len(st.l) >= r.set.LivePoints
 	if needs := math.Exp(-logX) > priorCalls; needs && enough && (r.bound == nil || r.boundX-logX > rebuildStep) {
-		rng := random.New(r.set.Seed, "bound", r.run, uint64(r.out.Iterations))
-		if b := newBound(st.u, r.dim, logX, r.set.Periodic, r.bound, rng.Rand); b != nil {
+		stream := func(i int) *rand.Rand {
+			return random.New(r.set.Seed, "bound", r.run, uint64(r.out.Iterations), uint64(i)).Rand
+		}
+		if b := newBound(st.u, r.dim, logX, r.set.Periodic, r.bound, r.set.Workers, stream); b != nil {
 			r.bound, r.boundX = b, logX
 		}
 	}

@@ -3,12 +3,18 @@ package sampler
 import (
 	"math"
 	"math/rand/v2"
+
+	"golang.org/x/sync/errgroup"
 )
 
 const (
 	folds       = 5 // each cross-validation round leaves out a fifth
 	foldRounds  = 4
 	volumeTrial = 1000 // draws that measure the volume of the union
+
+	// Many numbers of clusters are tried after this compression, or when the
+	// bound has become worse by this much, both in nats.
+	ladderStep, ladderWorse = 0.5, 0.2
 
 	// margin is the expected number of points of a cluster in the shell that
 	// is added around it at least: were the cluster an ellipsoid of unknown
@@ -23,17 +29,24 @@ type bound struct {
 	dim        int
 	points     []float64 // n×dim, the points it was built from, frame coordinates
 	pooled     scatter   // covariance within the clusters
+	clusters   int       // that were asked for
 	ellipsoids []ellipsoid
 	cumulative []float64 // running sum of the ellipsoids' shares of the volume
 	weight     []float64 // running sum of their shares of the points
 	logVolume  float64   // of the union within the cube, measured by draws
+
+	// logX when many numbers of clusters were last tried, and by how much the
+	// log-volume of the best exceeded it.
+	ladderX, ladderExcess float64
 }
 
 // newBound fits a bound to n×dim points of the cube that are spread uniformly
 // over a prior volume of about exp(logX): the number of ellipsoids is the one
-// with the least volume. last, which may be nil, is the bound before. newBound
-// returns nil if the points are degenerate.
-func newBound(points []float64, dim int, logX float64, periodic []bool, last *bound, rng *rand.Rand) *bound {
+// with the least volume. last, which may be nil, is the bound before. stream
+// returns the random stream of a number; the result does not depend on the
+// number of workers. newBound returns nil if the points are degenerate.
+func newBound(points []float64, dim int, logX float64, periodic []bool, last *bound, workers int, stream func(i int) *rand.Rand) *bound {
+	rng := stream(0)
 	n := len(points) / dim
 	b := &bound{frame: newFrame(points, dim, periodic), dim: dim, points: make([]float64, n*dim)}
 	for i := range n {
@@ -46,28 +59,59 @@ func newBound(points []float64, dim int, logX float64, periodic []bool, last *bo
 		return nil
 	}
 	b.pooled = one.pooled
-	if volume > logX+tightEnough {
-		before := 0
-		metrics := []scatter{one.pooled}
-		if last != nil {
-			before = len(last.ellipsoids)
-			metrics = append(metrics, last.pooled)
-		}
-		for i, k := range candidates(n, dim, before) {
-			p, ok := split(b.points, dim, k, metrics[i%len(metrics)], rng)
-			if !ok {
-				continue
-			}
-			if es, v := b.fit(p, rng); es != nil && v < volume {
-				best, volume = es, v
-				b.pooled = p.pooled
+	try := func(ks []int, base int) {
+		for i, t := range b.try(ks, one.pooled, last, workers, func(i int) *rand.Rand { return stream(base + i) }) {
+			if t.ellipsoids != nil && t.volume < volume {
+				best, volume, b.pooled = t.ellipsoids, t.volume, t.pooled
+				b.clusters = ks[i]
 			}
 		}
+	}
+	b.clusters = 1
+	if last != nil && volume > logX+tightEnough {
+		try(neighbours(n, dim, last.clusters), 1)
+	}
+	if last != nil {
+		b.ladderX, b.ladderExcess = last.ladderX, last.ladderExcess
+	}
+	if excess := volume - logX; excess > tightEnough && (last == nil || last.ladderX-logX > ladderStep || excess > b.ladderExcess+ladderWorse) {
+		try(ladder(n, dim), 1+len(neighbours(n, dim, n)))
+		b.ladderX, b.ladderExcess = logX, volume-logX
 	}
 	b.ellipsoids = best
 	b.enlarge(foldRounds, rng)
 	b.measure(rng)
 	return b
+}
+
+// trial is what came of one number of clusters.
+type trial struct {
+	ellipsoids []ellipsoid // nil if it failed
+	volume     float64     // log, as fit returns it
+	pooled     scatter
+}
+
+// try fits each number of clusters, every other one in the metric of the bound
+// before.
+func (b *bound) try(ks []int, metric scatter, last *bound, workers int, stream func(i int) *rand.Rand) []trial {
+	tried := make([]trial, len(ks))
+	var group errgroup.Group
+	group.SetLimit(workers)
+	for i := len(ks) - 1; i >= 0; i-- { // the dearest first
+		group.Go(func() error {
+			m, rng := metric, stream(i)
+			if last != nil && i%2 == 1 {
+				m = last.pooled
+			}
+			if p, ok := split(b.points, b.dim, ks[i], m, rng); ok {
+				tried[i].ellipsoids, tried[i].volume = b.fit(p, rng)
+				tried[i].pooled = p.pooled
+			}
+			return nil
+		})
+	}
+	_ = group.Wait() // none returns an error
+	return tried
 }
 
 // fit returns the ellipsoids of a partition and the log of their total volume,

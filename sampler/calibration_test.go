@@ -7,6 +7,8 @@ import (
 	"math"
 	"strings"
 	"testing"
+
+	"knell/internal/random"
 )
 
 var (
@@ -31,7 +33,8 @@ type tally struct {
 func calibrate(t testing.TB, p *problem, n int, s Settings) tally {
 	y := tally{phase: map[string]*Phase{}}
 	for seed := range n {
-		s.Seed = uint64(seed) + 1
+		// Of its own for each problem, so that problems are independent.
+		s.Seed = random.New(uint64(seed), p.name, uint64(p.dim)).Uint64()
 		s.Periodic = p.periodic
 		if s.LivePoints == 0 {
 			s.LivePoints = p.live

@@ -26,20 +26,23 @@ type partition struct {
 	pooled scatter // covariance within the clusters, the metric they were found in
 }
 
-// candidates lists the numbers of clusters to try for n points when last was
-// found best before: a coarse ladder, and the neighbourhood of last.
-func candidates(n, dim, last int) []int {
-	most := n / (2 * (dim + 1))
+// ladder lists numbers of clusters to try for n points, a factor 2 apart.
+func ladder(n, dim int) []int {
 	var ks []int
-	for k := 2; k <= most; k *= 2 {
+	for k := 2; k <= n/(2*(dim+1)); k *= 2 {
 		ks = append(ks, k)
 	}
+	return ks
+}
+
+// neighbours lists the numbers of clusters to try when last was best before.
+func neighbours(n, dim, last int) []int {
+	var ks []int
 	for _, f := range []float64{0.8, 1, 1.25} {
-		if k := int(math.Ceil(f * float64(last))); k > 2 && k <= most {
+		if k := int(math.Ceil(f * float64(last))); k > 1 && k <= n/(2*(dim+1)) {
 			ks = append(ks, k)
 		}
 	}
-	slices.Sort(ks)
 	return slices.Compact(ks)
 }
 
@@ -104,9 +107,16 @@ func kmeans(y []float64, dim int, of []int, centres []float64) {
 		for i := range of {
 			row := y[i*dim : (i+1)*dim]
 			best, least := 0, math.Inf(1)
-			for c := 0; c < len(centres)/dim; c++ {
-				if d := gap2(row, centres[c*dim:(c+1)*dim]); d < least {
-					best, least = c, d
+			for c := 0; c < len(centres); c += dim {
+				var d float64
+				for k, m := range centres[c : c+dim] {
+					d += (row[k] - m) * (row[k] - m)
+					if d >= least {
+						break
+					}
+				}
+				if d < least {
+					best, least = c/dim, d
 				}
 			}
 			changed = changed || of[i] != best

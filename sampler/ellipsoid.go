@@ -4,8 +4,15 @@ import (
 	"math"
 	"math/rand/v2"
 
-	"gonum.org/v1/gonum/mat"
+	"gonum.org/v1/gonum/blas"
+	"gonum.org/v1/gonum/blas/blas64"
+	"gonum.org/v1/gonum/lapack/lapack64"
 )
+
+// leastPivot is the least diagonal element of the Cholesky factor of a
+// correlation matrix that is taken for more than rounding: its square is the
+// variance of a parameter given the others, in units of its own.
+const leastPivot = 1e-7
 
 // scatter is a symmetric dim×dim matrix by rows, of which the lower triangle is
 // kept: a sum of outer products, or a covariance.
@@ -57,27 +64,32 @@ func (s scatter) ellipsoid(mean []float64) (ellipsoid, bool) {
 			return e, false
 		}
 	}
-	sym := mat.NewSymDense(dim, nil)
+	// The factor and its inverse straight from the LAPACK routines: the
+	// condition number that the matrix types also compute costs more than both.
+	lower := make([]float64, dim*dim)
 	for r := range dim {
 		for k := 0; k <= r; k++ {
-			sym.SetSym(r, k, s.a[r*dim+k]/(width[r]*width[k]))
+			lower[r*dim+k] = s.a[r*dim+k] / (width[r] * width[k])
 		}
 	}
-	var chol mat.Cholesky
-	if !chol.Factorize(sym) || chol.Cond() > 1e13 {
+	if _, ok := lapack64.Potrf(blas64.Symmetric{N: dim, Stride: dim, Data: lower, Uplo: blas.Lower}); !ok {
 		return e, false
 	}
-	var lower, inverse mat.TriDense
-	chol.LTo(&lower)
-	if err := inverse.InverseTri(&lower); err != nil {
+	for r := range dim {
+		if lower[r*dim+r] < leastPivot {
+			return e, false
+		}
+	}
+	inverse := append([]float64(nil), lower...)
+	if !lapack64.Trtri(blas64.Triangular{N: dim, Stride: dim, Data: inverse, Uplo: blas.Lower, Diag: blas.NonUnit}) {
 		return e, false
 	}
 	e.factor = make([]float64, dim*dim)
-	e.inverse = make([]float64, dim*dim)
+	e.inverse = inverse
 	for r := range dim {
 		for k := 0; k <= r; k++ {
-			e.factor[r*dim+k] = lower.At(r, k) * width[r]
-			e.inverse[r*dim+k] = inverse.At(r, k) / width[k]
+			e.factor[r*dim+k] = lower[r*dim+k] * width[r]
+			e.inverse[r*dim+k] = inverse[r*dim+k] / width[k]
 		}
 		e.logDet += math.Log(e.factor[r*dim+r])
 	}
