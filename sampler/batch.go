@@ -89,7 +89,7 @@ func (r *runner) whole(ctx context.Context) (*Outcome, error) {
 		}
 		if most := r.set.MaxCalls; most != 0 && r.prior.calls+r.out.Calls >= most {
 			r.out.Status, r.out.Partial = CallLimit, true
-			r.out.warn("MaxCalls = %d reached with ln(1 + Z'/Z) = %.3g nat remaining, %.3g wanted", most, r.remaining(), r.set.Remaining)
+			r.out.note("MaxCalls = %d reached with ln(1 + Z'/Z) = %.3g nat remaining, %.3g wanted", most, r.remaining(), r.set.Remaining)
 			break
 		}
 		again, err := r.batch(ctx)
@@ -98,7 +98,7 @@ func (r *runner) whole(ctx context.Context) (*Outcome, error) {
 				return nil, err
 			}
 			r.out.Status, r.out.Partial = Interrupted, true
-			r.out.warn("interrupted with ln(1 + Z'/Z) = %.3g nat remaining, %.3g wanted", r.remaining(), r.set.Remaining)
+			r.out.note("interrupted with ln(1 + Z'/Z) = %.3g nat remaining, %.3g wanted", r.remaining(), r.set.Remaining)
 			break
 		}
 		if !again {
@@ -160,7 +160,7 @@ func (r *runner) begin(ctx context.Context) error {
 		return fmt.Errorf("sampler: the likelihood is zero at all %d points drawn from the prior, want some above zero", r.out.PriorDraws)
 	}
 	if len(l) < n/2 {
-		r.out.warn("only %d of %d draws from the prior have non-zero likelihood: narrow the prior", len(l), r.out.PriorDraws)
+		r.out.note("only %d of %d draws from the prior have non-zero likelihood: narrow the prior", len(l), r.out.PriorDraws)
 	}
 	r.out.openEnded = len(l) == n
 	r.logX = r.out.priorShrinkage().mean

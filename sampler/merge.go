@@ -44,6 +44,7 @@ func merge(outcomes []*Outcome, workers int) (*Outcome, error) {
 		m.ranks = append(m.ranks, o.ranks...)
 		m.Status = max(m.Status, o.Status)
 		m.Partial = m.Partial || o.Partial
+		m.notes = append(m.notes, o.notes...)
 		m.addPhases(o.Phases)
 	}
 	m.Points = make([][]float64, 0, total)
@@ -68,11 +69,6 @@ func merge(outcomes []*Outcome, workers int) (*Outcome, error) {
 		m.LogLikelihood = append(m.LogLikelihood, o.LogLikelihood[h])
 		m.LiveCount = append(m.LiveCount, live)
 		head[next]++
-	}
-	for i, o := range outcomes {
-		if o.Partial {
-			m.warn("part %d of the merged runs is partial (%v)", i, o.Status)
-		}
 	}
 	m.weigh(workers)
 	m.judge()

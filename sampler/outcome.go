@@ -73,6 +73,7 @@ type Outcome struct {
 	Warnings []string
 	Verdict  string // "sound", or what is doubtful and what to change
 
+	notes     []string // warnings of the runs themselves, without judge's
 	seed      uint64
 	openEnded bool // the prior draws went on until enough were above zero
 	ranks     []float64
@@ -81,18 +82,19 @@ type Outcome struct {
 // doubtfulP is the p-value of insertion ranks below which a run is in doubt.
 const doubtfulP = 1e-3
 
-// warn adds a warning.
-func (o *Outcome) warn(format string, args ...any) {
-	o.Warnings = append(o.Warnings, fmt.Sprintf(format, args...))
+// note keeps a warning for judge.
+func (o *Outcome) note(format string, args ...any) {
+	o.notes = append(o.notes, fmt.Sprintf(format, args...))
 }
 
-// judge fills in the rank tests and the verdict.
+// judge sets the rank tests, the warnings and the verdict.
 func (o *Outcome) judge() {
+	o.Warnings = append([]string(nil), o.notes...)
 	o.InsertionRankP = uniformP(o.ranks)
 	o.InsertionRankBlockP = blockP(o.ranks, o.LivePoints/max(o.Runs, 1))
 	var doubts []string
 	if p := min(o.InsertionRankP, o.InsertionRankBlockP); p < doubtfulP {
-		o.warn("insertion ranks are not uniform: p = %.2g", p)
+		o.Warnings = append(o.Warnings, fmt.Sprintf("insertion ranks are not uniform: p = %.2g", p))
 		doubts = append(doubts, "new points were not drawn fairly: raise LivePoints or SliceSteps")
 	}
 	if o.Partial {

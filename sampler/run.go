@@ -60,7 +60,7 @@ func Run(ctx context.Context, newTarget func() (Target, error), s Settings) (*Ou
 			// The next run had no live points yet: what is there, stands.
 			result.Status = Interrupted
 			result.Partial = true
-			result.warn("interrupted at an error of %.3g nat, %.3g wanted", result.LogEvidenceError, s.EvidenceError)
+			result.note("interrupted at an error of %.3g nat, %.3g wanted", result.LogEvidenceError, s.EvidenceError)
 			result.judge()
 			return result, nil
 		}
@@ -68,19 +68,18 @@ func Run(ctx context.Context, newTarget func() (Target, error), s Settings) (*Ou
 		if result, err = merge(parts, s.Workers); err != nil {
 			return nil, err
 		}
-		if len(parts) == 1 {
-			result.Warnings = part.Warnings
-		}
 		if part.Status != Converged || s.EvidenceError == 0 || result.LogEvidenceError <= s.EvidenceError {
 			return result, nil
 		}
 		if len(parts) == s.MaxRuns {
-			result.warn("%d runs reached an error of %.3g nat, %.3g wanted: raise MaxRuns or LivePoints", len(parts), result.LogEvidenceError, s.EvidenceError)
+			result.note("%d runs reached an error of %.3g nat, %.3g wanted: raise MaxRuns or LivePoints", len(parts), result.LogEvidenceError, s.EvidenceError)
+			result.judge()
 			return result, nil
 		}
 		if s.MaxCalls != 0 && result.Calls+int64(s.LivePoints) > s.MaxCalls {
 			result.Status = CallLimit
-			result.warn("MaxCalls = %d reached at an error of %.3g nat, %.3g wanted", s.MaxCalls, result.LogEvidenceError, s.EvidenceError)
+			result.note("MaxCalls = %d reached at an error of %.3g nat, %.3g wanted", s.MaxCalls, result.LogEvidenceError, s.EvidenceError)
+			result.judge()
 			return result, nil
 		}
 		ratio := result.LogEvidenceError / s.EvidenceError
