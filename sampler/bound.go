@@ -20,6 +20,12 @@ const (
 	// is added around it at least: were the cluster an ellipsoid of unknown
 	// size, the shell would miss a share e^-margin/n of its volume.
 	margin = 3
+
+	// crowd adds crowd·ln C points' worth of volume to each of C ellipsoids:
+	// each misses a share of the volume of its own points only, but there are C
+	// of them. Measured on a ring of 25 ellipsoids and 500 points, the missed
+	// share of the whole is 2.8, 1.5, 0.9 over 500 for crowd 0, 1, 2.
+	crowd = 2
 )
 
 // bound is a union of ellipsoids that holds the part of the unit cube above a
@@ -138,8 +144,10 @@ func (b *bound) enlarge(rounds int, rng *rand.Rand) {
 	for c := range b.ellipsoids {
 		grow[c] = b.crossValidate(c, rounds, rng)
 	}
+	more := crowd * math.Log(float64(len(b.ellipsoids)))
 	for c := range b.ellipsoids {
-		b.ellipsoids[c].radius2 *= grow[c]
+		e := &b.ellipsoids[c]
+		e.radius2 *= grow[c] * math.Pow(1+more/float64(len(e.members)), 2/float64(b.dim))
 	}
 }
 

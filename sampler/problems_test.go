@@ -208,6 +208,32 @@ func ridge() *problem {
 	}
 }
 
+// winding is like ridge, in 7 dimensions with two curved pairs: given its partner
+// x, a coordinate is a narrow Gaussian around ½ + 2.5 (x - ½)². All factors are
+// normalised along lines of unit Jacobian, so ln Z is that of the phase.
+func winding() *problem {
+	p := ridge()
+	const kappa, wide, narrow = 200.0, 0.08, 0.01
+	normal := func(x, sigma float64) float64 {
+		return -0.5*x*x/(sigma*sigma) - 0.5*math.Log(2*math.Pi*sigma*sigma)
+	}
+	return &problem{
+		name: "curved winding ridge", dim: 7, live: 1000, want: p.want, source: p.source,
+		periodic: []bool{true, false, false, false, false, false, false},
+		logL: func(u []float64) float64 {
+			l := kappa * (math.Cos(2*math.Pi*(u[0]+3*u[1]-2*u[2])) - 1)
+			for _, k := range []int{1, 2, 3, 4} {
+				l += normal(u[k]-0.5, wide)
+			}
+			for _, k := range []int{5, 6} {
+				x := u[k-3] - 0.5
+				l += normal(u[k]-0.5-2.5*x*x, narrow)
+			}
+			return l
+		},
+	}
+}
+
 // spikeAndSlab in dim dimensions on a unit cube centred on 0 (Bayesian Anal. 1,
 // 833 (2006) has dim = 20): 100 N(0, 0.01) + N(0, 0.1), Z = 101 less the slab's
 // tails: erf(5/√2)^dim of it is inside.
@@ -235,6 +261,6 @@ func problems() []*problem {
 		shells(2, -1.745642), shells(5, -5.673601),
 		eggbox(), rosenbrock(2, -5.804132), rosenbrock(4, -15.101691),
 		logGamma(2), logGamma(6), twoModes(2, 0.015), twoModes(5, 0.03),
-		plateau(), steps(), hollow(), ridge(), spikeAndSlab(5),
+		plateau(), steps(), hollow(), ridge(), winding(), spikeAndSlab(5),
 	}
 }
