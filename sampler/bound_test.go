@@ -3,6 +3,7 @@ package sampler
 import (
 	"math"
 	"math/rand/v2"
+	"slices"
 	"testing"
 
 	"knell/internal/random"
@@ -27,6 +28,7 @@ func regions() []region {
 	}
 	return []region{
 		{"ball", 5, math.Exp(logBall(5)) * math.Pow(0.45, 5), func(u []float64) bool { return ball(u, 0.5) < 0.45*0.45 }, nil},
+		{"box", 6, math.Pow(0.5, 6), func(u []float64) bool { return slices.Max(u) < 0.75 && slices.Min(u) > 0.25 }, nil},
 		{"two discs", 2, math.Pi * (0.01 + 0.0025), func(u []float64) bool { return ball(u, 0.2) < 0.01 || ball(u, 0.7) < 0.0025 }, nil},
 		{"ring", 2, math.Pi * (0.16 - 0.1225), func(u []float64) bool { d := ball(u, 0.5); return d < 0.16 && d > 0.1225 }, nil},
 		{"disc across the seam", 2, math.Pi * 0.01, func(u []float64) bool {
@@ -58,8 +60,10 @@ func (g region) bound(seed uint64, points []float64) *bound {
 }
 
 // The bound must hold points of the region that it was not built from, all but
-// a share that cannot matter: with n points a share of a few in 10 n changes the
-// log-evidence by that much per nat of compression, well below sqrt(H/n).
+// a share that cannot matter: it changes the log-evidence by that much per nat
+// of compression. At 1/n and H = 20 it is 0.02 for 1000 live points, a seventh
+// of sqrt(H/n). Boxes in several dimensions are not for ellipsoids to be tight
+// around.
 func TestBoundCoversUnseenPoints(t *testing.T) {
 	const n, fresh, repeats = 500, 4000, 12
 	for _, g := range regions() {
@@ -83,7 +87,7 @@ func TestBoundCoversUnseenPoints(t *testing.T) {
 			if share > 1.0/n {
 				t.Errorf("misses %.2g of the region, want at most %.2g", share, 1.0/n)
 			}
-			if r := math.Exp(excess / repeats); r > 4 {
+			if r := math.Exp(excess / repeats); r > 4 && g.name != "box" {
 				t.Errorf("volume %.2f times that of the region, want at most 4", r)
 			}
 		})

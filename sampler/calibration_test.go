@@ -65,7 +65,7 @@ func (y tally) row(p *problem) string {
 	mean, sd := meanSD(y.z)
 	n := float64(len(y.z))
 	var b strings.Builder
-	fmt.Fprintf(&b, "%-15s %3d %4d  %+6.2f ± %.2f  %5.2f ± %.2f  %+.3f %.3f %9.0f  rank KS p %.3f  warn %d ", p.name, p.dim, len(y.z),
+	fmt.Fprintf(&b, "%-20s %3d %4d  %+6.2f ± %.2f  %5.2f ± %.2f  %+.3f %.3f %9.0f  rank KS p %.3f  warn %d ", p.name, p.dim, len(y.z),
 		mean, 1/math.Sqrt(n), sd, 1/math.Sqrt(2*(n-1)), y.dz, y.err, y.calls, uniformP(y.rankP), y.warn)
 	for _, m := range methodNames[1:] {
 		if ph := y.phase[m]; ph != nil {
@@ -73,6 +73,60 @@ func (y tally) row(p *problem) string {
 		}
 	}
 	return b.String()
+}
+
+// shortRuns are the problems of every go test, with live points that keep it
+// short.
+func shortRuns() []*problem {
+	ps := []*problem{
+		gaussian(2, 0.95), gaussian(8, 0.95), gaussian(12, 0.95),
+		shells(2, -1.745642), eggbox(), rosenbrock(2, -5.804132), logGamma(2),
+		twoModes(5, 0.03), plateau(), steps(), hollow(), ridge(), spikeAndSlab(5),
+	}
+	for _, p := range ps {
+		p.live = 200
+	}
+	return ps
+}
+
+// TestEvidenceIsCalibrated: over seeds, (ln Z - truth)/error must look like a
+// unit normal, for each problem and for all together. -long runs more problems,
+// more seeds and more live points.
+func TestEvidenceIsCalibrated(t *testing.T) {
+	const n, sigmas = 8, 4
+	var all, rankP []float64
+	for _, p := range shortRuns() {
+		y := calibrate(t, p, n, Settings{})
+		t.Log(y.row(p))
+		y.check(t, p, sigmas)
+		all = append(all, y.z...)
+		rankP = append(rankP, y.rankP...)
+	}
+	tally{z: all, rankP: rankP}.check(t, &problem{name: "all problems"}, sigmas)
+}
+
+// check fails t if the mean or the spread of z is off by more than k standard
+// errors, 1/√n of the mean and √(2/n) of the mean square.
+func (y tally) check(t *testing.T, p *problem, k float64) {
+	t.Helper()
+	var mean, square float64
+	n := float64(len(y.z))
+	for _, z := range y.z {
+		mean += z / n
+		square += z * z / n
+	}
+	if math.Abs(mean) > k/math.Sqrt(n) {
+		t.Errorf("%s/%d: mean z = %.2f, want 0 ± %.2f", p.name, p.dim, mean, k/math.Sqrt(n))
+	}
+	// For few seeds the mean square is skewed: the upper limit of a chi-squared
+	// of n degrees at k sigmas by its cube-root normal approximation.
+	c := 1 - 2/(9*n)
+	if hi, lo := math.Pow(c+k*math.Sqrt(2/(9*n)), 3), math.Pow(max(0, c-k*math.Sqrt(2/(9*n))), 3); square > hi || square < lo {
+		t.Errorf("%s/%d: mean square of z = %.2f, want 1 within [%.2f, %.2f]", p.name, p.dim, square, lo, hi)
+	}
+	if q := uniformP(y.rankP); q < 1e-4 {
+		t.Errorf("%s/%d: insertion-rank p-values are not uniform: p = %.2g", p.name, p.dim, q)
+	}
 }
 
 // TestLong prints the calibration table and checks it.
@@ -93,5 +147,6 @@ func TestLong(t *testing.T) {
 		}
 		y := calibrate(t, p, *seeds, s)
 		fmt.Println(y.row(p))
+		y.check(t, p, 4)
 	}
 }
