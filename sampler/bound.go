@@ -12,9 +12,10 @@ const (
 	foldRounds  = 4
 	volumeTrial = 1000 // draws that measure the volume of the union
 
-	// Many numbers of clusters are tried after this compression, or when the
-	// bound has become worse by this much, both in nats.
-	ladderStep, ladderWorse = 0.5, 0.2
+	// Many numbers of clusters are tried anew after ladderStep of compression,
+	// twice that after each time that none was better than the last, and at
+	// once when the bound has become worse by ladderWorse. In nats.
+	ladderStep, ladderMost, ladderWorse = 0.5, 4, 0.2
 
 	// foresight times the excess of the factor found by cross-validation over 1
 	// is what the squared radius grows by. 1 leaves 0.6/n of a box in six
@@ -44,9 +45,9 @@ type bound struct {
 	weight     []float64 // running sum of their shares of the points
 	logVolume  float64   // of the union within the cube, measured by draws
 
-	// logX when many numbers of clusters were last tried, and by how much the
-	// log-volume of the best exceeded it.
-	ladderX, ladderExcess float64
+	// logX when many numbers of clusters were last tried, by how much the
+	// log-volume of the best exceeded it, and how long to wait for the next time.
+	ladderX, ladderExcess, ladderWait float64
 }
 
 // newBound fits a bound to n×dim points of the cube that are spread uniformly
@@ -80,12 +81,18 @@ func newBound(points []float64, dim int, logX float64, periodic []bool, last *bo
 	if last != nil && volume > logX+tightEnough {
 		try(neighbours(n, dim, last.clusters), 1)
 	}
+	b.ladderWait = ladderStep
 	if last != nil {
-		b.ladderX, b.ladderExcess = last.ladderX, last.ladderExcess
+		b.ladderX, b.ladderExcess, b.ladderWait = last.ladderX, last.ladderExcess, last.ladderWait
 	}
-	if excess := volume - logX; excess > tightEnough && (last == nil || last.ladderX-logX > ladderStep || excess > b.ladderExcess+ladderWorse) {
+	if excess := volume - logX; excess > tightEnough && (last == nil || b.ladderX-logX > b.ladderWait || excess > b.ladderExcess+ladderWorse) {
 		try(ladder(n, dim), 1+len(neighbours(n, dim, n)))
 		b.ladderX, b.ladderExcess = logX, volume-logX
+		if b.ladderExcess < excess {
+			b.ladderWait = ladderStep
+		} else {
+			b.ladderWait = min(2*b.ladderWait, ladderMost)
+		}
 	}
 	b.ellipsoids = best
 	b.enlarge(foldRounds, rng)
