@@ -14,8 +14,8 @@ func (r *runner) report(m method, efficiency float64) {
 	r.part = max(r.part, r.share())
 	fraction := r.part
 	if p := r.prior; p.runs > 0 {
-		// Weights by variance: what this run knows so far, beside the rest.
-		w := 1 / (1 + float64(p.runs))
+		// This run beside those that were merged.
+		w := 1 / (1 + float64(p.known))
 		logZ = w*logZ + (1-w)*p.logZ
 		variance = w*w*variance + (1-w)*(1-w)*p.variance
 		fraction = (float64(p.runs) + r.part) / float64(p.wanted)

@@ -46,58 +46,74 @@ func Run(ctx context.Context, newTarget func() (Target, error), s Settings) (*Ou
 		return nil, err
 	}
 	var (
-		parts  []*Outcome
-		result *Outcome
-		prior  ledger
+		parts []*Outcome
+		prior = ledger{wanted: 1}
 	)
 	for {
 		r := newRunner(p, s, len(parts), prior)
 		part, err := r.whole(ctx)
 		if err != nil {
-			if ctx.Err() == nil || result == nil {
+			if ctx.Err() == nil || len(parts) == 0 {
 				return nil, err
 			}
 			// The next run had no live points yet: what is there, stands.
-			result.Status = Interrupted
-			result.Partial = true
-			result.note("interrupted at an error of %.3g nat, %.3g wanted", result.LogEvidenceError, s.EvidenceError)
-			result.judge()
-			return result, nil
+			return conclude(parts, s, Interrupted)
 		}
 		parts = append(parts, part)
-		if result, err = merge(parts, s.Workers); err != nil {
-			return nil, err
+		prior.calls += part.Calls
+		prior.runs = len(parts)
+		prior.fraction = r.prior.fraction
+		switch {
+		case part.Status != Converged || s.EvidenceError == 0:
+			return merge(parts, s.Workers)
+		case s.MaxCalls != 0 && prior.calls+int64(s.LivePoints) > s.MaxCalls:
+			return conclude(parts, s, CallLimit)
+		case len(parts) < prior.wanted:
+			continue
 		}
-		if part.Status != Converged || s.EvidenceError == 0 || result.LogEvidenceError <= s.EvidenceError {
-			return result, nil
+		result, err := merge(parts, s.Workers)
+		if err != nil || result.LogEvidenceError <= s.EvidenceError {
+			return result, err
 		}
 		if len(parts) == s.MaxRuns {
 			result.note("%d runs reached an error of %.3g nat, %.3g wanted: raise MaxRuns or LivePoints", len(parts), result.LogEvidenceError, s.EvidenceError)
 			result.judge()
 			return result, nil
 		}
-		if s.MaxCalls != 0 && result.Calls+int64(s.LivePoints) > s.MaxCalls {
-			result.Status = CallLimit
-			result.note("MaxCalls = %d reached at an error of %.3g nat, %.3g wanted", s.MaxCalls, result.LogEvidenceError, s.EvidenceError)
-			result.judge()
-			return result, nil
-		}
 		ratio := result.LogEvidenceError / s.EvidenceError
-		prior = ledger{
-			runs:     len(parts),
-			wanted:   min(s.MaxRuns, max(len(parts)+1, int(math.Ceil(float64(len(parts))*ratio*ratio)))),
-			calls:    result.Calls,
-			logZ:     result.LogEvidence,
-			variance: result.LogEvidenceError * result.LogEvidenceError,
-			fraction: r.prior.fraction,
-		}
+		prior.wanted = int(math.Ceil(min(float64(s.MaxRuns), cautious*float64(len(parts))*ratio*ratio)))
+		prior.wanted = max(prior.wanted, len(parts)+1)
+		prior.logZ, prior.variance = result.LogEvidence, result.LogEvidenceError*result.LogEvidenceError
+		prior.known = len(parts)
 	}
 }
 
-// ledger is what earlier runs leave for the progress of the next.
+// cautious scales the estimate of how many runs are needed, which is uncertain
+// by a few percent; a last run is added if they turn out too few.
+const cautious = 0.95
+
+// conclude merges the runs there are when the wanted error was not reached.
+func conclude(parts []*Outcome, s Settings, status Status) (*Outcome, error) {
+	result, err := merge(parts, s.Workers)
+	if err != nil || status == CallLimit && result.LogEvidenceError <= s.EvidenceError {
+		return result, err
+	}
+	result.Status = status
+	if status == Interrupted {
+		result.Partial = true
+		result.note("interrupted at an error of %.3g nat, %.3g wanted", result.LogEvidenceError, s.EvidenceError)
+	} else {
+		result.note("MaxCalls = %d reached at an error of %.3g nat, %.3g wanted", s.MaxCalls, result.LogEvidenceError, s.EvidenceError)
+	}
+	result.judge()
+	return result, nil
+}
+
+// ledger is what earlier runs leave for the next, and for its progress.
 type ledger struct {
 	runs, wanted   int
 	calls          int64
-	logZ, variance float64
 	fraction       float64
+	known          int // runs that the following two come from
+	logZ, variance float64
 }
