@@ -49,7 +49,10 @@ type Cavity struct {
 	echoPhaseIndex int
 }
 
-var _ Model = (*Cavity)(nil)
+var (
+	_ Model  = (*Cavity)(nil)
+	_ Turner = (*Cavity)(nil)
+)
 
 func describeCavity(s Settings) ([]Parameter, error) {
 	if s.Reflectivity == "" {
@@ -166,6 +169,18 @@ func (c *Cavity) lnDistance(theta []float64) float64 {
 
 func (c *Cavity) echoDelay(theta []float64) float64 {
 	return kerr.EchoDelay(theta[1], c.lnDistance(theta)) * theta[0] * constants.SolarMassSeconds
+}
+
+// Turn implements Turner for the echo phase: what the data see at the first
+// mode's frequency is the phase of the whole round trip, echo_phase - 2 k x0.
+func (c *Cavity) Turn(theta []float64) (int, float64) {
+	spin := theta[1]
+	omega, _, _, err := c.ringing.tracks[0].At(spin)
+	if err != nil {
+		return c.echoPhaseIndex, 0
+	}
+	k := real(omega) - 2*kerr.HorizonFrequency(spin)
+	return c.echoPhaseIndex, k * kerr.SurfaceTortoise(spin, c.lnDistance(theta)) / math.Pi
 }
 
 // Fill implements Model.

@@ -62,6 +62,17 @@ type Model interface {
 	Clone() Model
 }
 
+// Turner is a model with a periodic parameter that the data fix only together
+// with other parameters: they see it turned by an angle that depends on those.
+// A sampler that moves in the turned angle instead finds an upright region where
+// there would be a wound-up one. For a prior that is uniform over the circle the
+// two are the same: the turn moves no prior mass.
+type Turner interface {
+	// Turn returns the parameter's index and the turns, whole circles being 1,
+	// to add to the upright angle. It reads only the other parameters.
+	Turn(theta []float64) (index int, turns float64)
+}
+
 // Settings says which model to build and for which data.
 type Settings struct {
 	Model        string   // one of Names()

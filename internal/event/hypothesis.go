@@ -16,7 +16,8 @@ type hypothesis struct {
 	model      models.Model
 	set        *priors.Set
 	likelihood *likelihood.Gaussian
-	periodic   []bool // by free parameter
+	periodic   []bool        // by free parameter
+	turner     models.Turner // nil: the sampler moves in the parameters' own angles
 }
 
 // newHypothesis builds the model and orders the priors as the model's
@@ -47,7 +48,26 @@ func newHypothesis(h Hypothesis, c *Config, g *likelihood.Gaussian) (*hypothesis
 		}
 		out.periodic = append(out.periodic, p.Periodic && isFullCircle(list[i], p))
 	}
+	if turner, ok := model.(models.Turner); ok {
+		index, _ := turner.Turn(make([]float64, len(names)))
+		if isFullCircle(list[index], model.Parameters()[index]) {
+			out.turner = turner
+		}
+	}
 	return out, nil
+}
+
+// place maps a point of the unit cube to the parameters. The prior's measure is
+// kept: an angle that is uniform over the circle may be turned by anything.
+func (h *hypothesis) place(u, theta []float64) {
+	h.set.Map(u, theta)
+	if h.turner == nil {
+		return
+	}
+	index, turns := h.turner.Turn(theta)
+	low, high := h.set.Prior(index).Support()
+	x := (theta[index]-low)/(high-low) + turns
+	theta[index] = low + (high-low)*(x-math.Floor(x))
 }
 
 // isFullCircle says whether the prior treats the ends of a periodic parameter as
@@ -63,8 +83,8 @@ func isFullCircle(p priors.Prior, of models.Parameter) bool {
 
 // target is a hypothesis as the sampler sees it, for one goroutine.
 type target struct {
-	set    *priors.Set
-	model  models.Model
+	*hypothesis
+	model  models.Model // its own clone
 	worker *likelihood.Worker
 	theta  []float64
 	h      *models.Polarizations
@@ -76,11 +96,11 @@ func (h *hypothesis) newTarget() (sampler.Target, error) { return h.target(), ni
 
 func (h *hypothesis) target() *target {
 	return &target{
-		set:    h.set,
-		model:  h.model.Clone(),
-		worker: h.likelihood.Worker(),
-		theta:  make([]float64, len(h.model.Parameters())),
-		h:      models.NewPolarizations(h.likelihood.Grid().Count),
+		hypothesis: h,
+		model:      h.model.Clone(),
+		worker:     h.likelihood.Worker(),
+		theta:      make([]float64, len(h.model.Parameters())),
+		h:          models.NewPolarizations(h.likelihood.Grid().Count),
 	}
 }
 
@@ -89,7 +109,7 @@ func (t *target) Dim() int { return t.set.Dim() }
 
 // LogLikelihood implements sampler.Target: ln L over noise alone, in nats.
 func (t *target) LogLikelihood(u []float64) (float64, error) {
-	t.set.Map(u, t.theta)
+	t.place(u, t.theta)
 	return t.at(t.theta)
 }
 

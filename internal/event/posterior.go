@@ -38,7 +38,7 @@ func (p *Prepared) summarise(h *hypothesis, o *sampler.Outcome) (report.Hypothes
 	theta := make([]float64, len(h.model.Parameters()))
 	derived := make([]float64, len(h.model.Derived()))
 	for i, u := range o.Points {
-		h.set.Map(u, theta)
+		h.place(u, theta)
 		if err := h.model.Derive(theta, derived); err != nil {
 			return entry, report.Posterior{}, err
 		}
