@@ -23,5 +23,11 @@
 //  7. While the error is above the wanted one, Run adds a run and merge.go joins
 //     them. The Outcome (outcome.go) is judged last.
 //
+// What no run can see: a mode that holds no live point when the ellipsoids
+// first part from it, is lost, and the insertion ranks do not tell. A mode needs
+// a share of several over LivePoints of the prior volume above the threshold at
+// which it parts from the rest. Independent runs that disagree beyond their
+// errors are the sign; more live points are the cure.
+//
 // Nothing here knows what the likelihood is of, and nothing is written.
 package sampler
