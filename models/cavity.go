@@ -51,7 +51,7 @@ type Cavity struct {
 
 var (
 	_ Model  = (*Cavity)(nil)
-	_ Turner = (*Cavity)(nil)
+	_ Bender = (*Cavity)(nil)
 )
 
 func describeCavity(s Settings) ([]Parameter, error) {
@@ -163,24 +163,42 @@ func (c *Cavity) Clone() Model {
 }
 
 // lnDistance is the logarithm of the surface's proper distance in units of M.
+func lnDistance(mass, offset float64) float64 {
+	return offset*math.Ln10 + math.Log(constants.PlanckLength/(mass*constants.SolarMassMetres))
+}
+
 func (c *Cavity) lnDistance(theta []float64) float64 {
-	return theta[c.offsetIndex]*math.Ln10 + math.Log(constants.PlanckLength/(theta[0]*constants.SolarMassMetres))
+	return lnDistance(theta[0], theta[c.offsetIndex])
 }
 
 func (c *Cavity) echoDelay(theta []float64) float64 {
 	return kerr.EchoDelay(theta[1], c.lnDistance(theta)) * theta[0] * constants.SolarMassSeconds
 }
 
-// Turn implements Turner for the echo phase: what the data see at the first
-// mode's frequency is the phase of the whole round trip, echo_phase - 2 k x0.
-func (c *Cavity) Turn(theta []float64) (int, float64) {
-	spin := theta[1]
-	omega, _, _, err := c.ringing.tracks[0].At(spin)
-	if err != nil {
-		return c.echoPhaseIndex, 0
+// Bent implements Bender.
+func (c *Cavity) Bent() []int { return []int{c.offsetIndex, c.echoPhaseIndex} }
+
+// Bend implements Bender. The offset is counted from that which gives the
+// centre's echo delay. The echo phase is counted from the phase that the round
+// trip, 2 k x0, has at one frequency in hertz, the first mode's at the centre.
+// (At the mode's own frequency at theta it would still wind: some hertz of
+// uncertainty times a third of a second are turns.)
+func (c *Cavity) Bend(i int, theta, centre []float64) float64 {
+	mass, spin := theta[0], theta[1]
+	if i == 0 {
+		// The delay is linear in the offset.
+		at := func(offset float64) float64 {
+			return kerr.EchoDelay(spin, lnDistance(mass, offset)) * mass
+		}
+		zero := at(0)
+		return (c.echoDelay(centre)/constants.SolarMassSeconds - zero) / (at(1) - zero)
 	}
-	k := real(omega) - 2*kerr.HorizonFrequency(spin)
-	return c.echoPhaseIndex, k * kerr.SurfaceTortoise(spin, c.lnDistance(theta)) / math.Pi
+	omega, _, _, err := c.ringing.tracks[0].At(centre[1])
+	if err != nil {
+		return 0
+	}
+	k := real(omega)*mass/centre[0] - 2*kerr.HorizonFrequency(spin)
+	return 2 * k * kerr.SurfaceTortoise(spin, c.lnDistance(theta))
 }
 
 // Fill implements Model.

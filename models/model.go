@@ -62,15 +62,21 @@ type Model interface {
 	Clone() Model
 }
 
-// Turner is a model with a periodic parameter that the data fix only together
-// with other parameters: they see it turned by an angle that depends on those.
-// A sampler that moves in the turned angle instead finds an upright region where
-// there would be a wound-up one. For a prior that is uniform over the circle the
-// two are the same: the turn moves no prior mass.
-type Turner interface {
-	// Turn returns the parameter's index and the turns, whole circles being 1,
-	// to add to the upright angle. It reads only the other parameters.
-	Turn(theta []float64) (index int, turns float64)
+// Bender is a model with parameters that the data fix only together with others,
+// so that the likely region is a thin bent sheet: the echo delay fixes the offset
+// only where mass and spin are given. A sampler does better in straight
+// coordinates, of which the parameter is a shift that depends on the other
+// parameters. A shift that wraps around moves no prior mass, so the evidence and
+// the posterior stay what they are.
+type Bender interface {
+	// Bent lists the indices of such parameters.
+	Bent() []int
+	// Bend returns the shift, in the parameter's unit, from the straight
+	// coordinate of parameter Bent()[i] to the parameter itself. It reads the
+	// parameters that are not bent and those before i in Bent. centre is a fixed
+	// point of parameter space, such as the prior's middle; the nearer it is to
+	// what the data prefer, the straighter the region.
+	Bend(i int, theta, centre []float64) float64
 }
 
 // Settings says which model to build and for which data.

@@ -42,15 +42,10 @@ func (p *Prepared) Check() Summary {
 	}
 	for _, h := range p.hypotheses {
 		entry := HypothesisSummary{Name: h.Name, Model: h.Model, Dimensions: h.set.Dim()}
-		free := 0
 		for i, q := range h.model.Parameters() {
-			low, high := h.set.Prior(i).Support()
-			periodic := false
-			if low != high {
-				periodic = h.periodic[free]
-				free++
-			}
-			entry.Priors = append(entry.Priors, PriorSummary{q.Name, q.Unit, fmt.Sprint(h.set.Prior(i)), periodic})
+			prior := h.set.Prior(i)
+			periodic := q.Periodic && isFullCircle(prior, q)
+			entry.Priors = append(entry.Priors, PriorSummary{q.Name, q.Unit, fmt.Sprint(prior), periodic})
 		}
 		s.Hypotheses = append(s.Hypotheses, entry)
 	}

@@ -16,8 +16,15 @@ type hypothesis struct {
 	model      models.Model
 	set        *priors.Set
 	likelihood *likelihood.Gaussian
-	periodic   []bool        // by free parameter
-	turner     models.Turner // nil: the sampler moves in the parameters' own angles
+	periodic   []bool // by coordinate of the unit cube
+	bends      []bend
+	centre     []float64 // the prior's middle, for the bends
+}
+
+// bend is a parameter that the sampler sees in a straight coordinate.
+type bend struct {
+	index, parameter, coordinate int     // in Bent, theta and the unit cube
+	width                        float64 // of the prior's support
 }
 
 // newHypothesis builds the model and orders the priors as the model's
@@ -42,32 +49,47 @@ func newHypothesis(h Hypothesis, c *Config, g *likelihood.Gaussian) (*hypothesis
 	}
 	out := &hypothesis{Hypothesis: h, model: model, set: set, likelihood: g}
 	for i, p := range model.Parameters() {
-		low, high := list[i].Support()
-		if low == high {
-			continue
-		}
-		out.periodic = append(out.periodic, p.Periodic && isFullCircle(list[i], p))
-	}
-	if turner, ok := model.(models.Turner); ok {
-		index, _ := turner.Turn(make([]float64, len(names)))
-		if isFullCircle(list[index], model.Parameters()[index]) {
-			out.turner = turner
+		if low, high := list[i].Support(); low != high {
+			out.periodic = append(out.periodic, p.Periodic && isFullCircle(list[i], p))
 		}
 	}
+	out.straighten()
 	return out, nil
 }
 
-// place maps a point of the unit cube to the parameters. The prior's measure is
-// kept: an angle that is uniform over the circle may be turned by anything.
-func (h *hypothesis) place(u, theta []float64) {
-	h.set.Map(u, theta)
-	if h.turner == nil {
+// straighten finds the parameters that the model bends and whose priors have a
+// finite support to wrap around.
+func (h *hypothesis) straighten() {
+	bender, ok := h.model.(models.Bender)
+	if !ok {
 		return
 	}
-	index, turns := h.turner.Turn(theta)
-	low, high := h.set.Prior(index).Support()
-	x := (theta[index]-low)/(high-low) + turns
-	theta[index] = low + (high-low)*(x-math.Floor(x))
+	h.centre = make([]float64, h.set.Len())
+	middle := make([]float64, h.set.Dim())
+	for i := range middle {
+		middle[i] = 0.5
+	}
+	h.set.Map(middle, h.centre)
+	for i, parameter := range bender.Bent() {
+		coordinate := h.set.FreeIndex(h.set.Names()[parameter])
+		low, high := h.set.Prior(parameter).Support()
+		if coordinate < 0 || math.IsInf(high-low, 0) {
+			continue
+		}
+		h.bends = append(h.bends, bend{i, parameter, coordinate, high - low})
+		h.periodic[coordinate] = true
+	}
+}
+
+// place maps a point of the unit cube to the parameters. A bent parameter's
+// coordinate is shifted, around the unit interval, by an amount that depends on
+// parameters placed before it; that keeps the measure, whatever the shift is.
+func (h *hypothesis) place(u, theta []float64) {
+	h.set.Map(u, theta)
+	for _, b := range h.bends {
+		x := u[b.coordinate] + h.model.(models.Bender).Bend(b.index, theta, h.centre)/b.width
+		theta[b.parameter] = h.set.Prior(b.parameter).Quantile(x - math.Floor(x))
+	}
 }
 
 // isFullCircle says whether the prior treats the ends of a periodic parameter as
