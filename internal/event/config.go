@@ -8,7 +8,10 @@ type Config struct {
 	Folder string // relative paths in it start here
 	Source []byte // as read
 	lines  lineIndex
-	header []string // lines that the command line adds to Source
+	// Lines that the command line adds to Source: at its top, and below the
+	// line of that number.
+	header   []string
+	inserted map[int][]string
 
 	Title string
 	Seed  uint64

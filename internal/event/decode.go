@@ -1,6 +1,7 @@
 package event
 
 import (
+	"bytes"
 	"errors"
 	"fmt"
 	"math"
@@ -32,23 +33,22 @@ const (
 func ReadConfig(path string) (*Config, error) {
 	text, err := os.ReadFile(path)
 	if err != nil {
-		return nil, &InputError{File: path, Got: "event file", Err: plain(err), Want: "a readable TOML file"}
+		var p *os.PathError
+		if errors.As(err, &p) {
+			// The message names the path already.
+			err = p.Err
+		}
+		return nil, &InputError{File: path, Got: "event file", Err: err, Want: "a readable TOML file"}
 	}
 	return Decode(path, text)
-}
-
-// plain strips the operation and path that the message names already.
-func plain(err error) error {
-	var p *os.PathError
-	if errors.As(err, &p) {
-		return p.Err
-	}
-	return err
 }
 
 // Decode checks the text of an event file; name stands for it in messages, and
 // relative paths in it start at name's folder. Every fault is an *InputError.
 func Decode(name string, text []byte) (*Config, error) {
+	// Some editors begin a file with a byte order mark. It must not end up in
+	// the middle of what AsRun gives back.
+	text = bytes.TrimPrefix(text, []byte("\xef\xbb\xbf"))
 	values := map[string]any{}
 	if _, err := toml.Decode(string(text), &values); err != nil {
 		e := &InputError{File: name, Got: err.Error(), Want: "TOML 1.0"}
@@ -66,7 +66,7 @@ func Decode(name string, text []byte) (*Config, error) {
 		return nil, e
 	}
 	d := &decoder{file: name, lines: newLineIndex(string(text))}
-	c := &Config{File: name, Folder: filepath.Dir(name), Source: text, lines: d.lines}
+	c := &Config{File: name, Folder: filepath.Dir(name), Source: text, lines: d.lines, inserted: map[int][]string{}}
 	d.config(c, &table{d: d, values: values})
 	if d.err != nil {
 		return nil, d.err
@@ -85,6 +85,9 @@ const (
 )
 
 func (d *decoder) config(c *Config, t *table) {
+	// A misspelt table first: it would otherwise be reported as missing.
+	t.known = append(t.known, "analysis", "event", "hypothesis", "injection", "prior", "sampler", "seed", "site", "title")
+	t.finish()
 	c.Title = t.textOr("title", strings.TrimSuffix(filepath.Base(c.File), ".toml"), "a text")
 	c.Seed = uint64(t.integerOr("seed", 1, "a whole number, 0 or more", func(n int64) bool { return n >= 0 }))
 	d.event(&c.Event, t.sub("event", "a table [event] with time and sky"))
@@ -104,7 +107,6 @@ func (d *decoder) config(c *Config, t *table) {
 	for _, h := range t.subs("hypothesis", "at least one [[hypothesis]]") {
 		c.Hypotheses = append(c.Hypotheses, d.hypothesis(h, c, shared, used))
 	}
-	t.finish()
 	if d.err != nil {
 		return
 	}
@@ -130,8 +132,11 @@ func (c *Config) hasSite(code string) bool {
 	return false
 }
 
+// maxTime is the last GPS time that a strain file may declare, s.
+const maxTime = 1e11
+
 func (d *decoder) event(e *Event, t *table) {
-	e.Time = t.number("time", "the GPS time of the peak in s", positive)
+	e.Time = t.number("time", "the GPS time of the peak in s", func(x float64) bool { return x > 0 && x < maxTime })
 	e.TimeAt = t.textOr("time_at", "", "the code of a [[site]]")
 	sky := t.sub("sky", "{ right_ascension = rad, declination = rad }")
 	e.RightAscension = sky.number("right_ascension", wantAngle, nil)
@@ -243,15 +248,21 @@ func (d *decoder) analysis(a *Analysis, t *table) {
 	if nyquist := a.SampleRate / 2; a.High >= nyquist {
 		t.fail("band", fmt.Sprintf("a band below the Nyquist frequency of %g Hz (half of analysis.sample_rate)", nyquist))
 	}
+	// 1.1 s at 1000 Hz are 1100.0000000000002 samples in binary.
 	n := a.Duration * a.SampleRate
-	if n != math.Round(n) || math.Mod(n, 2) != 0 {
-		t.fail("duration", fmt.Sprintf("an even number of samples; %g s at %g Hz are %g", a.Duration, a.SampleRate, n))
-	}
-	if n > 1<<24 {
-		t.fail("duration", fmt.Sprintf("at most %d samples; %g s at %g Hz are %g", 1<<24, a.Duration, a.SampleRate, n))
+	switch whole := math.Round(n); {
+	case !(math.Abs(n-whole) <= 1e-9*n) || math.Mod(whole, 2) != 0:
+		t.fail("duration", fmt.Sprintf("an even number of samples; %g s at %g Hz are %.12g", a.Duration, a.SampleRate, n))
+	case n > maxSamples:
+		t.fail("duration", fmt.Sprintf("at most %d samples; %g s at %g Hz are %.12g", maxSamples, a.Duration, a.SampleRate, n))
+	default:
+		a.Duration = whole / a.SampleRate
 	}
 	if a.Gate >= a.Duration/2 {
 		t.fail("gate", fmt.Sprintf("less than half of the duration of %g s", a.Duration))
+	}
+	if a.Gate > 0 && a.gateSamples() < 1 {
+		t.fail("gate", fmt.Sprintf("0 or at least one sample, %g s", 1/a.SampleRate))
 	}
 	if a.Gate*a.SampleRate > maxGate {
 		t.fail("gate", fmt.Sprintf("at most %d samples, %g s at this sample rate", maxGate, maxGate/a.SampleRate))
@@ -259,22 +270,25 @@ func (d *decoder) analysis(a *Analysis, t *table) {
 	if a.Low < 2/a.Duration {
 		t.fail("band", fmt.Sprintf("a lower edge of at least %g Hz, two cycles in the duration", 2/a.Duration))
 	}
+	if d.err == nil && a.grid().Count < 1 {
+		t.fail("band", fmt.Sprintf("at least one multiple of %g Hz, one over the duration, within it", 1/a.Duration))
+	}
 }
 
-// maxGate bounds the factorised matrix to 512 MiB.
-const maxGate = 8192
+const (
+	maxSamples = 1 << 24 // of a segment
+	maxGate    = 8192    // samples; bounds the factorised matrix to 512 MiB
+)
 
 func (d *decoder) sampler(s *Sampler, top *table) {
 	t := &table{d: d, path: "sampler"}
 	if top.has("sampler") {
 		t = top.sub("sampler", "a table [sampler]")
-	} else {
-		top.known = append(top.known, "sampler")
 	}
 	s.LivePoints = int(t.integerOr("live_points", DefaultLivePoints, "a whole number from 100 to 1000000", func(n int64) bool { return n >= 100 && n <= 1e6 }))
 	s.EvidenceError = t.numberOr("evidence_error", DefaultEvidenceError, "nat, 0.01 or more", func(x float64) bool { return x >= 0.01 })
 	s.Remaining = t.numberOr("remaining", DefaultRemaining, "nat, above 0 and at most 1", func(x float64) bool { return x > 0 && x <= 1 })
-	s.MaxCalls = t.integerOr("max_calls", 0, "a whole number, 0 for no limit", func(n int64) bool { return n >= 0 })
+	s.MaxCalls = t.integerOr("max_calls", 0, "0 for no limit, or at least live_points", func(n int64) bool { return n == 0 || n >= int64(s.LivePoints) })
 	t.finish()
 }
 

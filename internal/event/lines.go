@@ -20,9 +20,12 @@ func newLineIndex(text string) lineIndex {
 	for number, line := range strings.Split(text, "\n") {
 		number++
 		if closing != "" {
-			if strings.Contains(line, closing) {
-				closing = ""
+			_, rest, closed := strings.Cut(line, closing)
+			if !closed {
+				continue
 			}
+			closing = ""
+			depth += bracketBalance(rest, &closing)
 			continue
 		}
 		trimmed := strings.TrimSpace(line)
@@ -33,32 +36,42 @@ func newLineIndex(text string) lineIndex {
 		switch {
 		case trimmed == "" || trimmed[0] == '#':
 		case strings.HasPrefix(trimmed, "[["):
-			name, _, _ := strings.Cut(trimmed[2:], "]]")
-			name = normalKey(name)
+			parts, _, _ := cutKey(trimmed[2:], ']')
+			name := resolve(parts, counts)
 			prefix = fmt.Sprintf("%s[%d].", name, counts[name])
 			counts[name]++
 			index[strings.TrimSuffix(prefix, ".")] = number
 		case trimmed[0] == '[':
-			name, _, _ := strings.Cut(trimmed[1:], "]")
-			name = normalKey(name)
-			// [site.noise] after [[site]] belongs to the last site.
-			for array, n := range counts {
-				if strings.HasPrefix(name, array+".") {
-					name = fmt.Sprintf("%s[%d]%s", array, n-1, name[len(array):])
-				}
-			}
+			parts, _, _ := cutKey(trimmed[1:], ']')
+			name := resolve(parts, counts)
 			prefix = name + "."
 			index[name] = number
 		default:
-			key, value, found := strings.Cut(trimmed, "=")
+			parts, value, found := cutKey(trimmed, '=')
 			if !found {
 				continue
 			}
-			index[prefix+normalKey(key)] = number
+			index[prefix+strings.Join(parts, ".")] = number
 			depth = bracketBalance(value, &closing)
 		}
 	}
 	return index
+}
+
+// resolve joins a header's parts. After [[site]], [site.noise] belongs to the
+// last site: site[1].noise.
+func resolve(parts []string, counts map[string]int) string {
+	name := ""
+	for i, p := range parts {
+		if i > 0 {
+			if n := counts[name]; n > 0 {
+				name = fmt.Sprintf("%s[%d]", name, n-1)
+			}
+			name += "."
+		}
+		name += p
+	}
+	return name
 }
 
 // line returns the line of key or of the nearest table around it, 0 if none.
@@ -76,13 +89,40 @@ func (x lineIndex) line(key string) int {
 	return 0
 }
 
-// normalKey strips spaces and quotes from each part of a dotted key.
-func normalKey(key string) string {
-	parts := strings.Split(key, ".")
-	for i, p := range parts {
-		parts[i] = strings.Trim(strings.TrimSpace(p), `"'`)
+// cutKey splits a dotted key, whose parts may be quoted, off the text before the
+// first end outside quotes.
+func cutKey(text string, end byte) (parts []string, rest string, found bool) {
+	part := ""
+	for i := 0; i < len(text); i++ {
+		switch c := text[i]; c {
+		case end:
+			return append(parts, part), text[i+1:], true
+		case '.':
+			parts, part = append(parts, part), ""
+		case ' ', '\t':
+		case '"', '\'':
+			length := quoted(text[i:])
+			part += text[i+1 : max(i+1, i+length-1)]
+			i += length - 1
+		default:
+			part += text[i : i+1]
+		}
 	}
-	return strings.Join(parts, ".")
+	return append(parts, part), "", false
+}
+
+// quoted is the length of the quoted string that text begins with, or of the whole
+// text if nothing closes it.
+func quoted(text string) int {
+	for i := 1; i < len(text); i++ {
+		switch {
+		case text[i] == text[0]:
+			return i + 1
+		case text[i] == '\\' && text[0] == '"':
+			i++
+		}
+	}
+	return len(text)
 }
 
 // bracketBalance counts opening less closing brackets outside strings and
@@ -107,11 +147,7 @@ func bracketBalance(value string, closing *string) int {
 				i += 3 + end + 2
 				continue
 			}
-			for i++; i < len(value) && value[i] != c; i++ {
-				if value[i] == '\\' && c == '"' {
-					i++
-				}
-			}
+			i += quoted(value[i:]) - 1
 		}
 	}
 	return depth

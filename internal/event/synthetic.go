@@ -1,9 +1,7 @@
 package event
 
 import (
-	"errors"
 	"fmt"
-	"io/fs"
 	"math"
 
 	"gonum.org/v1/gonum/dsp/fourier"
@@ -17,25 +15,18 @@ import (
 // and says where it is from.
 func (p *Prepared) series(i int, plus, cross, delay float64) (*strain.Series, string, error) {
 	c, s := p.Config, p.Config.Sites[i]
-	key := fmt.Sprintf("site[%d]", i)
 	var series *strain.Series
 	var source string
 	var err error
 	if s.Synthetic != nil {
 		series, err = p.synthesize(i)
 		source = "synthetic, " + s.Synthetic.Curve
-		key += ".synthetic"
 	} else {
 		series, err = strain.ReadFile(c.path(s.Strain), s.Code)
 		source = s.Strain
-		key += ".strain"
 	}
 	if err != nil {
-		want := ""
-		if errors.Is(err, fs.ErrNotExist) || errors.Is(err, fs.ErrPermission) {
-			want = "a readable strain file (.hdf5, .txt, .txt.gz, .csv)"
-		}
-		return nil, "", &InputError{File: c.File, Line: c.lines.line(key), Key: key, Err: err, Want: want}
+		return nil, "", c.fault(c.sourceKey(i), err)
 	}
 	if c.Injection != nil {
 		if err := p.inject(series, plus, cross, delay); err != nil {

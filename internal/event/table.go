@@ -6,6 +6,7 @@ import (
 	"slices"
 	"sort"
 	"strings"
+	"time"
 )
 
 // table reads one TOML table key by key and remembers which keys were asked
@@ -229,11 +230,21 @@ func show(v any) string {
 		s = fmt.Sprintf("%q", x)
 	case map[string]any, []map[string]any:
 		s = "a table"
+	case []any:
+		parts := make([]string, len(x))
+		for i, e := range x {
+			parts[i] = show(e)
+		}
+		s = "[" + strings.Join(parts, ", ") + "]"
+	case float64:
+		s = strings.ToLower(fmt.Sprint(x)) // nan and inf as TOML has them
+	case time.Time:
+		s = "the date or time " + x.Format(time.RFC3339)
 	default:
 		s = fmt.Sprint(x)
 	}
-	if len(s) > 80 {
-		s = s[:77] + "..."
+	if runes := []rune(s); len(runes) > 80 {
+		s = string(runes[:77]) + "..."
 	}
 	return s
 }
