@@ -32,7 +32,7 @@ func Load(c *Config) (*Prepared, error) {
 	for i, s := range c.Sites {
 		d, err := s.detector()
 		if err != nil {
-			return nil, c.fault(fmt.Sprintf("site[%d].geometry", i), err)
+			return nil, c.geometryFault(i, err)
 		}
 		detectors[i] = d
 	}
@@ -82,6 +82,17 @@ func (c *Config) fault(key string, err error) error {
 		e.Want = "a file that can be read"
 	}
 	return e
+}
+
+// geometryFault names the key of a geometry that is wrong.
+func (c *Config) geometryFault(i int, err error) error {
+	key := fmt.Sprintf("site[%d].geometry", i)
+	var f *site.FieldError
+	if !errors.As(err, &f) {
+		return c.fault(key, err)
+	}
+	name := strings.NewReplacer("Azimuth", "_azimuth", "Tilt", "_tilt").Replace(f.Field)
+	return &InputError{File: c.File, Line: c.lines.line(key + "." + name), Key: key + "." + name, Got: f.Got, Want: f.Want}
 }
 
 // sourceKey is the key that says where a site's strain is from.

@@ -1,8 +1,10 @@
 package event
 
 import (
+	"errors"
 	"fmt"
 	"math"
+	"os"
 
 	"gonum.org/v1/gonum/dsp/fourier"
 
@@ -22,8 +24,15 @@ func (p *Prepared) series(i int, plus, cross, delay float64) (*strain.Series, st
 		series, err = p.synthesize(i)
 		source = "synthetic, " + s.Synthetic.Curve
 	} else {
-		series, err = strain.ReadFile(c.path(s.Strain), s.Code)
+		path := c.path(s.Strain)
+		if info, e := os.Stat(path); e == nil && info.IsDir() {
+			return nil, "", c.fault(c.sourceKey(i), fmt.Errorf("%s is a folder, want a strain file", path))
+		}
+		series, err = strain.ReadFile(path, s.Code)
 		source = s.Strain
+	}
+	if unfit := new(InputError); errors.As(err, &unfit) {
+		return nil, "", unfit
 	}
 	if err != nil {
 		return nil, "", c.fault(c.sourceKey(i), err)
@@ -43,14 +52,15 @@ func (p *Prepared) synthesize(i int) (*strain.Series, error) {
 	s, a := p.Config.Sites[i], p.Config.Analysis
 	y := s.Synthetic
 	if a.SampleRate != math.Floor(a.SampleRate) {
-		return nil, fmt.Errorf("sample rate %g Hz, want a whole number of Hz for synthetic strain", a.SampleRate)
+		const key = "analysis.sample_rate"
+		return nil, &InputError{File: p.Config.File, Line: p.Config.lines.line(key), Key: key, Got: fmt.Sprint(a.SampleRate), Want: "a whole number of Hz for synthetic strain"}
 	}
 	if y.Length > 4096 || y.Length*a.SampleRate > 1<<26 {
 		return nil, fmt.Errorf("length %g s, want at most 4096 s and %d samples", y.Length, 1<<26)
 	}
 	n := int(y.Length * a.SampleRate)
 	series := &strain.Series{
-		File: "synthetic strain", Site: s.Code, SampleRate: a.SampleRate,
+		File: "synthetic", Site: s.Code, SampleRate: a.SampleRate,
 		StartSeconds: int64(math.Floor(p.geocentre - y.Length/2)),
 	}
 	if y.Quiet {
