@@ -29,7 +29,7 @@ noise     = { from = "curve" }
 [injection]
 model  = "ringdown"
 modes  = ["2,2,0"]
-values = { mass = 68.0, spin = 0.69, amplitude_220 = 1.2e-21, phase_220 = 1.3 }
+values = { mass = 68.0, spin = 0.69, amplitude_220 = 4e-21, phase_220 = 1.3 }
 
 [analysis]
 sample_rate = 1024.0
