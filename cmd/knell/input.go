@@ -24,6 +24,13 @@ func listsDemos(c *cli.Context) (bool, error) {
 	if c.String("demo") != "list" {
 		return false, nil
 	}
+	type demo struct {
+		Name  string `json:"name"`
+		Title string `json:"title"`
+	}
+	var document struct {
+		Demos []demo `json:"demos"`
+	}
 	for _, name := range configs.DemoNames() {
 		file, text, err := configs.Demo(name)
 		if err != nil {
@@ -33,7 +40,13 @@ func listsDemos(c *cli.Context) (bool, error) {
 		if err != nil {
 			return true, err
 		}
-		fmt.Fprintf(c.App.Writer, "%-10s %s\n", name, config.Title)
+		document.Demos = append(document.Demos, demo{name, config.Title})
+	}
+	if c.Bool("json") {
+		return true, printJSON(c, document)
+	}
+	for _, d := range document.Demos {
+		fmt.Fprintf(c.App.Writer, "%-10s %s\n", d.Name, d.Title)
 	}
 	return true, nil
 }

@@ -3,6 +3,7 @@ package main
 import (
 	"encoding/json"
 	"math"
+	"strings"
 
 	"github.com/urfave/cli/v2"
 
@@ -22,13 +23,16 @@ func modesCommand() *cli.Command {
 			&cli.IntFlag{Name: "l", Value: 2, Usage: "polar number"},
 			&cli.IntFlag{Name: "m", Value: 2, Usage: "azimuthal number"},
 			&cli.IntSliceFlag{Name: "n", Value: cli.NewIntSlice(0), Usage: "overtone, 0 is the longest-lived; may be given several times"},
-			&cli.Float64SliceFlag{Name: "spin", Required: true, Usage: "dimensionless spin; may be given several times"},
+			&cli.Float64SliceFlag{Name: "spin", Usage: "dimensionless spin; may be given several times"},
 			&cli.Float64Flag{Name: "mass", Usage: "detector-frame mass in solar masses, for Hz and s"},
 			jsonFlag(),
 		},
 		Action: func(c *cli.Context) error {
 			if c.Args().Present() {
 				return &usageError{"modes takes no argument, found " + c.Args().First()}
+			}
+			if len(c.Float64Slice("spin")) == 0 {
+				return &usageError{"modes wants --spin, from 0 to below 1"}
 			}
 			mass := c.Float64("mass")
 			if c.IsSet("mass") && !(mass > 0 && !math.IsInf(mass, 1)) {
@@ -39,7 +43,7 @@ func modesCommand() *cli.Command {
 				for _, n := range c.IntSlice("n") {
 					mode, err := kerr.QuasiNormalMode(c.Int("l"), c.Int("m"), n, spin)
 					if err != nil {
-						return &usageError{err.Error()}
+						return &usageError{strings.TrimPrefix(err.Error(), "kerr: ")}
 					}
 					doc.Modes = append(doc.Modes, modeEntry(mode, mass))
 				}

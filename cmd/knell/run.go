@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"strings"
 
 	"github.com/urfave/cli/v2"
 
@@ -46,18 +47,20 @@ func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 		Commands:                  []*cli.Command{weighCommand(), checkCommand(), modesCommand()},
 		// Errors come back to this function; nothing below it exits.
 		ExitErrHandler: func(*cli.Context, error) {},
-		OnUsageError: func(_ *cli.Context, err error, _ bool) error {
-			return &usageError{err.Error()}
+		OnUsageError: func(c *cli.Context, err error, _ bool) error {
+			return &usageError{optionMessage(c, err)}
 		},
 		Action: func(c *cli.Context) error {
 			if c.Args().Present() {
-				return &usageError{fmt.Sprintf("no command %q, want one of weigh, check, modes", c.Args().First())}
+				return &usageError{fmt.Sprintf("no command %q, want one of weigh, check, modes; see knell --help", c.Args().First())}
 			}
 			return cli.ShowAppHelp(c)
 		},
 	}
 	for _, command := range app.Commands {
 		command.OnUsageError = app.OnUsageError
+		// "knell weigh help" is a file called help, as it is everywhere else.
+		command.HideHelpCommand = true
 	}
 	return status(app.RunContext(ctx, optionsFirst(args, app.Commands)), stderr)
 }
@@ -67,7 +70,7 @@ func status(err error, stderr io.Writer) int {
 	if err == nil {
 		return statusDone
 	}
-	fmt.Fprintf(stderr, "knell: %v\n", err)
+	fmt.Fprintf(stderr, "knell: %s\n", strings.Join(strings.Fields(err.Error()), " "))
 	var usage *usageError
 	var input *event.InputError
 	switch {

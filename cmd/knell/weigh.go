@@ -47,9 +47,10 @@ func weigh(c *cli.Context) error {
 		return err
 	}
 	options := event.Options{Version: c.App.Version, Workers: c.Int("workers")}
+	done := func() {}
 	if !c.Bool("quiet") {
 		meter := report.NewMeter(c.App.ErrWriter)
-		defer meter.Done()
+		done = meter.Done
 		options.Progress = func(p event.Progress) {
 			label := p.Hypothesis
 			if p.Count > 1 {
@@ -62,14 +63,22 @@ func weigh(c *cli.Context) error {
 		}
 	}
 	result, posteriors, err := prepared.Weigh(c.Context, options)
+	// Before the table, which may go to the same terminal.
+	done()
 	if err != nil {
 		return err
+	}
+	for i := range result.Hypotheses {
+		result.Hypotheses[i].Posterior = report.PosteriorFile(result.Hypotheses[i].Name, ".csv")
 	}
 	if err := report.WriteDirectory(directory, result, posteriors, config.AsRun()); err != nil {
 		return err
 	}
 	if c.Bool("json") {
 		err = result.WriteJSON(c.App.Writer)
+		if err == nil && !c.Bool("quiet") {
+			_, err = fmt.Fprintf(c.App.ErrWriter, "written to %s\n", directory)
+		}
 	} else {
 		err = report.Table(c.App.Writer, result)
 		if err == nil {

@@ -85,9 +85,6 @@ const (
 )
 
 func (d *decoder) config(c *Config, t *table) {
-	// A misspelt table first: it would otherwise be reported as missing.
-	t.known = append(t.known, "analysis", "event", "hypothesis", "injection", "prior", "sampler", "seed", "site", "title")
-	t.finish()
 	c.Title = t.textOr("title", strings.TrimSuffix(filepath.Base(c.File), ".toml"), "a text")
 	c.Seed = uint64(t.integerOr("seed", 1, "a whole number, 0 or more", func(n int64) bool { return n >= 0 }))
 	d.event(&c.Event, t.sub("event", "a table [event] with time and sky"))
@@ -107,6 +104,8 @@ func (d *decoder) config(c *Config, t *table) {
 	for _, h := range t.subs("hypothesis", "at least one [[hypothesis]]") {
 		c.Hypotheses = append(c.Hypotheses, d.hypothesis(h, c, shared, used))
 	}
+	t.known = append(t.known, "injection", "prior", "sampler")
+	t.finish()
 	if d.err != nil {
 		return
 	}
@@ -341,8 +340,9 @@ func (d *decoder) hypothesis(t *table, c *Config, shared map[string]NamedPrior, 
 		t.fail("name", wantName)
 	}
 	for _, other := range c.Hypotheses {
-		if other.Name == h.Name {
-			t.fail("name", "each hypothesis under its own name")
+		// They become files, and some file systems do not tell capitals apart.
+		if strings.EqualFold(other.Name, h.Name) {
+			t.fail("name", "each hypothesis under its own name, whatever its capitals")
 		}
 	}
 	h.Model = t.choiceOr("model", "", models.Names())

@@ -166,6 +166,9 @@ func TestDecodeErrors(t *testing.T) {
 		{"in a hypothesis's prior", surface, surface + "prior = { charge = { kind = \"fixed\", value = 0.0 } }\n", "charge", "hypothesis[1].prior.charge", "a prior", "echo_phase"},
 		{"prior for nobody", "offset       =", "charge = { kind = \"fixed\", value = 1.0 }\noffset =", "charge", "prior.charge", "a prior", "a parameter of one of the hypotheses"},
 
+		{"misspelt key that must be there", "duration    = 1.0", "durration = 1.0", "durration", "analysis.durration", "1", "duration"},
+		{"misspelt code", `code      = "H1"`, `cod = "H1"`, "cod = ", "site[0].cod", "H1", "code"},
+
 		// Wrong types.
 		{"title", `"Tiny"`, "5", "title", "title", "5", "a text"},
 		{"seed a text", "seed  = 7", `seed = "7"`, "seed = \"7\"", "seed", `"7"`, "a whole number"},
@@ -244,6 +247,7 @@ func TestDecodeErrors(t *testing.T) {
 		{"no mode", horizon, strings.Replace(horizon, `"2,2,0"`, "", 1), "[]", "hypothesis[0].modes", "[]", "a list of modes"},
 		{"mode without a barrier", surface, strings.Replace(surface, "2,2,0", "3,3,0", 1), "3,3,0", "hypothesis[1].modes", `"3,3,0"`, "l = m = 2"},
 		{"hypothesis twice", `"surface"`, `"horizon" # again`, "again", "hypothesis[1].name", `"horizon"`, "its own name"},
+		{"hypothesis twice but for capitals", `"surface"`, `"Horizon"`, `"Horizon"`, "hypothesis[1].name", `"Horizon"`, "capitals"},
 		{"name that is no file's", `"surface"`, `"../surface"`, "../", "hypothesis[1].name", `"../surface"`, "letters"},
 		{"low above high", "low = 40.0", "low = 140.0", "140.0", "prior.mass.low", "140", "less than high = 110"},
 		{"unknown kind", `kind = "uniform", low = 40.0`, `kind = "flat", low = 40.0`, "flat", "prior.mass.kind", `"flat"`, "uniform"},

@@ -17,6 +17,8 @@ type table struct {
 	path   string // "" at the top, else dotted without a trailing dot
 	values map[string]any
 	known  []string
+	// missing is the complaint about a key of this table that is not there.
+	missing *InputError
 }
 
 // decoder is one file being read.
@@ -40,11 +42,15 @@ func (t *table) key(name string) string {
 }
 
 func (t *table) fail(name, want string) {
-	got := "nothing"
-	if v, ok := t.values[name]; ok {
-		got = show(v)
+	v, ok := t.values[name]
+	if ok {
+		t.d.fail(t.key(name), show(v), want)
+		return
 	}
-	t.d.fail(t.key(name), got, want)
+	if t.d.err == nil {
+		t.d.fail(t.key(name), "nothing", want)
+		t.missing = t.d.err
+	}
 }
 
 // take marks a key as known and returns its value.
@@ -75,6 +81,10 @@ func (t *table) finish() {
 		a, b := t.d.lines.line(t.key(unknown[i])), t.d.lines.line(t.key(unknown[j]))
 		return a < b || a == b && unknown[i] < unknown[j]
 	})
+	if t.missing != nil && t.missing == t.d.err {
+		// It may be there under a misspelt name.
+		t.d.err = nil
+	}
 	sort.Strings(t.known)
 	t.d.fail(t.key(unknown[0]), show(t.values[unknown[0]]), "a known key: one of "+strings.Join(slices.Compact(t.known), ", "))
 }
