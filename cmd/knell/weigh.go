@@ -2,6 +2,7 @@ package main
 
 import (
 	"fmt"
+	"os"
 
 	"github.com/urfave/cli/v2"
 
@@ -66,6 +67,10 @@ func weigh(c *cli.Context) error {
 	// Before the table, which may go to the same terminal.
 	done()
 	if err != nil {
+		if c.String("out") == "" {
+			// Made for nothing; if it is no longer empty it stays.
+			_ = os.Remove(directory)
+		}
 		return err
 	}
 	for i := range result.Hypotheses {

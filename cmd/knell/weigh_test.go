@@ -254,6 +254,21 @@ func TestWeighStrain(t *testing.T) {
 	}
 }
 
+// TestWeighFails: a run that fails is no matter of the command line, and leaves no
+// empty directory behind.
+func TestWeighFails(t *testing.T) {
+	t.Chdir(t.TempDir())
+	// Such strain overflows when squared.
+	writeEvent(t, "tiny.toml", strings.Replace(tiny, "5e-21", "1e300", 1))
+	status, stdout, stderr := knell(t, "weigh", "tiny.toml", "--quiet")
+	if status != statusFailed || stdout != "" || strings.Count(stderr, "\n") != 1 || !strings.Contains(stderr, "horizon") {
+		t.Errorf("status %d, standard output %q, standard error %q", status, stdout, stderr)
+	}
+	if entries, err := os.ReadDir("weighed"); err != nil || len(entries) != 0 {
+		t.Errorf("left %v behind (%v)", entries, err)
+	}
+}
+
 // cancelling is standard error that interrupts the run when it sees a text.
 type cancelling struct {
 	mu     sync.Mutex

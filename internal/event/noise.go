@@ -70,6 +70,9 @@ func (p *Prepared) density(key string, s Site, series *strain.Series, from, to i
 		if smooth > a.Duration/2 {
 			return nil, "", c.fault(key+".smooth", fmt.Errorf("%g s, want at most half of the duration", smooth))
 		}
+		if smooth < 1/a.SampleRate {
+			return nil, "", c.fault(key+".smooth", fmt.Errorf("%g s, want 0 for off or at least one sample, %g s", smooth, 1/a.SampleRate))
+		}
 		if spectrum, err = strain.Smooth(spectrum, smooth, a.Low, a.High); err != nil {
 			return nil, "", c.fault(key, err)
 		}
