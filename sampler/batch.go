@@ -44,6 +44,7 @@ type runner struct {
 	bound      *bound
 	boundX     float64 // logX when it was built
 	sliceCalls float64 // measured calls per point by slices
+	memory     memory  // of slices, and how many steps they need
 
 	ranks ranks
 	fresh slots
@@ -56,12 +57,14 @@ type slots struct {
 	u     []float64
 	l     []float64
 	calls []int64
+	start []int // see worker.start
 }
 
 func (s *slots) resize(n, dim int) {
 	s.u = slices.Grow(s.u[:0], n*dim)[:n*dim]
 	s.l = slices.Grow(s.l[:0], n)[:n]
 	s.calls = slices.Grow(s.calls[:0], n)[:n]
+	s.start = slices.Grow(s.start[:0], n)[:n]
 }
 
 func newRunner(p *pool, s Settings, run int, prior ledger) *runner {
@@ -70,6 +73,7 @@ func newRunner(p *pool, s Settings, run int, prior ledger) *runner {
 		out:        &Outcome{seed: s.Seed, LivePoints: s.LivePoints, Runs: 1},
 		logZ:       math.Inf(-1),
 		sliceCalls: sliceCallsGuess * float64(s.SliceSteps),
+		memory:     newMemory(p.dim, s.SliceSteps),
 	}
 }
 
@@ -115,7 +119,7 @@ func (r *runner) batch(ctx context.Context) (bool, error) {
 	if k == n {
 		return false, nil
 	}
-	st := &stage{threshold: r.l[k-1], u: r.u[k*r.dim:], l: r.l[k:], steps: r.set.SliceSteps}
+	st := &stage{threshold: r.l[k-1], u: r.u[k*r.dim:], l: r.l[k:], steps: int(r.memory.steps)}
 	logX := r.logX
 	for i := range k {
 		logX -= 1 / float64(n-i)
@@ -126,11 +130,12 @@ func (r *runner) batch(ctx context.Context) (bool, error) {
 	iteration := uint64(r.out.Iterations)
 	err := r.pool.each(ctx, count, func(w *worker, slot int) error {
 		rng := random.New(r.set.Seed, "draw", r.run, iteration, uint64(slot))
-		w.calls = 0
+		w.calls, w.start = 0, -1
 		l, err := w.draw(ctx, st, rng.Rand)
 		copy(r.fresh.u[slot*r.dim:], w.cube)
 		r.fresh.l[slot] = l
 		r.fresh.calls[slot] = w.calls
+		r.fresh.start[slot] = w.start
 		return err
 	})
 	if err != nil {
@@ -146,6 +151,7 @@ func (r *runner) batch(ctx context.Context) (bool, error) {
 	calls := float64(spent) / float64(count)
 	if st.method == fromSlices {
 		r.sliceCalls += 0.2 * (calls - r.sliceCalls)
+		r.sliceCalls *= r.memory.learn(st, &r.fresh)
 	}
 	rng := random.New(r.set.Seed, "rank", r.run, iteration)
 	r.ranks.begin(st.l)

@@ -44,6 +44,7 @@ type bound struct {
 	cumulative []float64 // running sum of the ellipsoids' shares of the volume
 	weight     []float64 // running sum of their shares of the points
 	logVolume  float64   // of the union within the cube, measured by draws
+	mode       []int     // of each ellipsoid: ellipsoids that overlap share one
 
 	// logX when many numbers of clusters were last tried, by how much the
 	// log-volume of the best exceeded it, and how long to wait for the next time.
@@ -97,7 +98,46 @@ func newBound(points []float64, dim int, logX float64, periodic []bool, last *bo
 	b.ellipsoids = best
 	b.enlarge(foldRounds, rng)
 	b.measure(rng)
+	b.connect()
 	return b
+}
+
+// connect sets the modes: two ellipsoids are of one mode if either holds a
+// member of the other, or through others of that mode.
+func (b *bound) connect() {
+	b.mode = make([]int, len(b.ellipsoids))
+	for c := range b.mode {
+		b.mode[c] = c
+	}
+	join := func(c, o int) {
+		from, to := b.mode[o], b.mode[c]
+		for i, m := range b.mode {
+			if m == from {
+				b.mode[i] = to
+			}
+		}
+	}
+	for c := range b.ellipsoids {
+		for o := range b.ellipsoids {
+			if b.mode[o] == b.mode[c] {
+				continue
+			}
+			for _, i := range b.ellipsoids[o].members {
+				if b.ellipsoids[c].contains(b.points[i*b.dim : (i+1)*b.dim]) {
+					join(c, o)
+					break
+				}
+			}
+		}
+	}
+}
+
+// modeOf returns the mode of the ellipsoid nearest to x.
+func (b *bound) modeOf(x []float64) int {
+	if len(b.ellipsoids) == 0 {
+		return 0
+	}
+	return b.mode[b.cell(x)]
 }
 
 // trial is what came of one number of clusters.

@@ -11,7 +11,7 @@
 //     them) away, each counted with its own live number n, n-1, ..., and
 //     prepare chooses how to draw their replacements: from the whole cube, from a
 //     union of ellipsoids (bound.go, cluster.go, ellipsoid.go, frame.go) or by
-//     slices (slice.go), whichever is expected to take fewest calls.
+//     slices (slice.go, memory.go), whichever is expected to take fewest calls.
 //  4. The workers of pool.go draw the replacements (draw.go). Each has a random
 //     stream of its own, keyed by run, batch and slot, and sees only the state
 //     at the start of the batch: the bits do not depend on the workers.

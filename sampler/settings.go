@@ -53,9 +53,10 @@ type Settings struct {
 	// place. nil means that no dimension is periodic.
 	Periodic []bool
 
-	// SliceSteps is the number of slice-sampling steps that separate a new
-	// point from the live point it starts from, where slices are used.
-	// Default defaultSlicePerDim times the dimension. More is fairer.
+	// SliceSteps is the least number of slice-sampling steps that separate a
+	// new point from the live point it starts from, where slices are used; up
+	// to six times as many are taken where walkers are seen to stay near their
+	// start. Default 4 times the dimension. More is fairer.
 	SliceSteps int
 
 	// Progress, if not nil, is called between batches from the goroutine that

@@ -7,9 +7,8 @@ import (
 )
 
 const (
-	// defaultSlicePerDim is the number of slice steps per dimension. Fewer
-	// than about two leave a trace of the starting point that the insertion
-	// ranks of a long run can see.
+	// defaultSlicePerDim is the least number of slice steps per dimension. That
+	// is enough for convex regions; memory.go raises it where it is not.
 	defaultSlicePerDim = 4
 
 	maxStepOut = 12 // interval growths of one slice
@@ -32,6 +31,7 @@ func (w *worker) slice(ctx context.Context, s *stage, rng *rand.Rand) (float64, 
 	dim := len(w.cube)
 	b := s.bound
 	start := rng.IntN(len(s.l))
+	w.start = start
 	l := s.l[start]
 	u := s.u[start*dim : (start+1)*dim]
 	if b == nil {

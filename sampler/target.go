@@ -38,6 +38,7 @@ func (e *PointError) Unwrap() error { return e.Err }
 type worker struct {
 	target Target
 	calls  int64 // since the slot began
+	start  int   // survivor that slices started from in this slot, or -1
 
 	cube              []float64 // point handed to the target
 	x, trial, dir, tr []float64 // frame coordinates and directions
