@@ -48,7 +48,7 @@ noise  = { from = "data", average = "median", segment = 2.0 }
 [analysis]
 sample_rate = 2048.0
 duration    = 2.0
-band        = [40.0, 800.0]
+band        = [30.0, 900.0]
 start       = 0.003
 gate        = 0.25
 
