@@ -2,7 +2,6 @@ package models
 
 import (
 	"fmt"
-	"math"
 	"strings"
 
 	"knell/models/kerr"
@@ -155,11 +154,14 @@ func New(s Settings) (Model, error) {
 	panic("models: described but not built: " + s.Model)
 }
 
+// maxStart bounds the start time, s; beyond it phases lose their last digits.
+const maxStart = 1e4
+
 // remnantParameters are common to every remnant model.
 func remnantParameters(s Settings) []Parameter {
 	return []Parameter{
-		{Name: "mass", Unit: "solar masses", Note: "remnant mass in the detector frame", Low: math.SmallestNonzeroFloat64, High: math.Inf(1)},
+		{Name: "mass", Unit: "solar masses", Note: "remnant mass in the detector frame", Low: 1e-3, High: 1e12},
 		{Name: "spin", Note: "remnant spin, dimensionless", Low: 0, High: kerr.MaxSpin},
-		{Name: "start_time", Unit: "s", Note: "where the ringdown begins, after the event time", Low: math.Inf(-1), High: math.Inf(1), Default: s.Start, HasDefault: true},
+		{Name: "start_time", Unit: "s", Note: "where the ringdown begins, after the event time", Low: -maxStart, High: maxStart, Default: s.Start, HasDefault: true},
 	}
 }

@@ -103,7 +103,7 @@ func modeParameters(labels []modeLabel) []Parameter {
 	var list []Parameter
 	for _, label := range labels {
 		list = append(list,
-			Parameter{Name: "amplitude_" + label.name, Note: "strain amplitude at the start", Low: 0, High: math.Inf(1)},
+			Parameter{Name: "amplitude_" + label.name, Note: "strain amplitude at the start", Low: 0, High: 1},
 			Parameter{Name: "phase_" + label.name, Unit: "rad", Note: "phase at the start", Low: 0, High: 2 * math.Pi, Periodic: true})
 	}
 	return list

@@ -3,7 +3,6 @@ package event
 import (
 	"errors"
 	"fmt"
-	"math"
 	"strings"
 
 	"knell/models"
@@ -104,16 +103,3 @@ func modelSettings(h Hypothesis, c *Config) models.Settings {
 		Grid: a.grid(), Inclination: c.Event.Inclination, Start: a.Start, Length: a.Duration - a.Gate,
 	}
 }
-
-// grid is the analysed band of the segment's frequencies.
-func (a Analysis) grid() models.Grid {
-	first := int(math.Ceil(a.Low*a.Duration - 1e-9))
-	last := int(math.Floor(a.High*a.Duration + 1e-9))
-	return models.Grid{First: max(1, first), Count: last - max(1, first) + 1, Step: 1 / a.Duration}
-}
-
-// gateSamples is the gate's length in samples.
-func (a Analysis) gateSamples() int { return int(math.Round(a.Gate * a.SampleRate)) }
-
-// samples is the segment's length.
-func (a Analysis) samples() int { return int(math.Round(a.Duration * a.SampleRate)) }

@@ -269,7 +269,7 @@ func (d *decoder) analysis(a *Analysis, t *table) {
 	if a.Low < 2/a.Duration {
 		t.fail("band", fmt.Sprintf("a lower edge of at least %g Hz, two cycles in the duration", 2/a.Duration))
 	}
-	if d.err == nil && a.grid().Count < 1 {
+	if d.err == nil && math.Floor(a.High*a.Duration+1e-9) < math.Ceil(a.Low*a.Duration-1e-9) {
 		t.fail("band", fmt.Sprintf("at least one multiple of %g Hz, one over the duration, within it", 1/a.Duration))
 	}
 }

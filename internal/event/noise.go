@@ -8,11 +8,6 @@ import (
 	"knell/likelihood/strain"
 )
 
-// rampPerGate is the width of the join between the band and the loud noise
-// outside it, in units of one over the gate: a few resolution elements of the
-// gate, so that the join correlates samples over less than the gate.
-const rampPerGate = 4
-
 // quietBefore is how long before the event the noise estimate leaves out, s: the
 // inspiral is louder than noise averaged over it would suggest.
 const quietBefore = 1.0
@@ -81,11 +76,7 @@ func (p *Prepared) density(key string, s Site, series *strain.Series, from, to i
 			p.Notes = append(p.Notes, fmt.Sprintf("The noise model of %s correlates samples over %g s, longer than the gate of %g s: the ends of the segment are not independent.", s.Code, smooth, a.Gate))
 		}
 	}
-	ramp := rampPerGate / a.Duration
-	if a.Gate > 0 {
-		ramp = rampPerGate / a.Gate
-	}
-	loud, err := likelihood.Loud(spectrum.Density, step, a.Low, a.High, ramp)
+	loud, err := likelihood.Loud(spectrum.Density, step, a.Low, a.High, a.ramp())
 	if err != nil {
 		return nil, "", c.fault(key, err)
 	}

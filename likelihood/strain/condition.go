@@ -7,13 +7,16 @@ import (
 	"gonum.org/v1/gonum/dsp/fourier"
 )
 
-// Transition edges of the filters in Condition, as fractions of the frequency
-// they belong to. The band that is left untouched is
-// [passLow*lowCut, PassHigh*rate/2].
+// PassLow and PassHigh bound what Condition leaves untouched, [PassLow*lowCut,
+// PassHigh*rate/2], as fractions of the frequency they belong to.
 const (
-	stopLow  = 0.5
-	passLow  = 0.8
+	PassLow  = 0.8
 	PassHigh = 0.9
+)
+
+const (
+	// stopLow times lowCut is where the lower transition ends.
+	stopLow = 0.5
 	// ringCycles is how long a filter rings, in units of one over the width of
 	// its transition: beyond that what it removes comes back by less than 1e-7 (see
 	// the tests).
@@ -56,7 +59,7 @@ func Condition(s *Series, rate, lowCut float64) (*Series, error) {
 		g := s.Gaps[0]
 		return nil, fmt.Errorf("%v: got a gap from GPS %.6f to %.6f (%s), want a stretch without gaps", s, s.Time(g.First), s.Time(g.End), g.Why)
 	}
-	ring := ringCycles / ((passLow - stopLow) * lowCut)
+	ring := ringCycles / ((PassLow - stopLow) * lowCut)
 	taper := ring / 2
 	edge := int(math.Ceil((ring + taper) * rate))
 	ratio := int(q)
@@ -98,7 +101,7 @@ func filter(x []float64, rate float64, ratio int, taper, lowCut float64) []float
 	nyquist := rate / float64(2*ratio)
 	for k := range c {
 		f := float64(k) * step
-		w := smoothStep((f/lowCut - stopLow) / (passLow - stopLow))
+		w := smoothStep((f/lowCut - stopLow) / (PassLow - stopLow))
 		if ratio > 1 {
 			w *= smoothStep((1 - f/nyquist) / (1 - PassHigh))
 		}
