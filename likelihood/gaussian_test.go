@@ -36,7 +36,7 @@ func newProblem(t testing.TB, samples, gate int, scale float64) problem {
 			f := math.Max(1, float64(k)/duration)
 			density[k] = scale * scale * (math.Pow(f/100, -4) + 1 + math.Pow(f/200, 2)) * (1 + 0.3*float64(i))
 		}
-		loud, err := Loud(density, 1/duration, 60, 400, 20)
+		loud, err := Loud(density, density, 1/duration, 60, 400, 20)
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -257,29 +257,36 @@ func TestLoud(t *testing.T) {
 	for k := range density {
 		density[k] = 2
 	}
-	density[0] = 0 // as conditioned data have it
-	out, err := Loud(density, 1, 20, 60, 10)
+	density[0] = 0            // as conditioned data have it
+	density[90] = 2000        // a line above the band
+	density[95] = math.Inf(1) // no measurement
+	out, err := Loud(density, density, 1, 20, 60, 10)
 	if err != nil {
 		t.Fatal(err)
 	}
 	for k, v := range out {
 		switch {
+		case k == 90 && v != loudMargin*2000:
+			t.Errorf("density at the line = %g, want %g", v, loudMargin*2000.0)
+		case k == 90:
 		case k >= 20 && k <= 60 && v != 2:
 			t.Errorf("density at %d Hz inside the band changes to %g", k, v)
-		case (k <= 10 || k >= 70) && math.Abs(v/(2*loudness)-1) > 1e-12:
-			t.Errorf("density at %d Hz = %g, want %g", k, v, 2*loudness)
-		case k > 0 && k <= 20 && out[k] > out[k-1], k > 60 && out[k] < out[k-1]:
+		case k <= 10 && math.Abs(v/(2*loudBelow)-1) > 1e-12:
+			t.Errorf("density at %d Hz = %g, want %g", k, v, 2*loudBelow)
+		case k >= 70 && math.Abs(v/(2*loudAbove)-1) > 1e-12:
+			t.Errorf("density at %d Hz = %g, want %g", k, v, 2.0*loudAbove)
+		case k > 0 && k <= 20 && v > out[k-1], k > 60 && k < 70 && v < out[k-1]:
 			t.Errorf("density is not monotone across the ramp at %d Hz", k)
 		}
 	}
-	if _, err := Loud(density, 1, 0.5, 60, 10); err != nil {
+	if _, err := Loud(density, density, 1, 0.5, 60, 10); err != nil {
 		t.Errorf("a band from the first bin: %v", err)
 	}
-	if _, err := Loud(density, 1, 20, 100, 10); err == nil {
+	if _, err := Loud(density, density, 1, 20, 100, 10); err == nil {
 		t.Error("a band that reaches Nyquist gives no error")
 	}
 	density[30] = math.NaN()
-	if _, err := Loud(density, 1, 20, 60, 10); err == nil {
+	if _, err := Loud(density, density, 1, 20, 60, 10); err == nil {
 		t.Error("a NaN in the band gives no error")
 	}
 }

@@ -34,6 +34,7 @@ import (
 type Cavity struct {
 	grid          Grid
 	start, length float64
+	lead          float64
 	ringing       *ringing
 	law           reflectivity
 	parity        kerr.Parity
@@ -112,7 +113,7 @@ func newCavity(s Settings) (Model, error) {
 		return nil, err
 	}
 	c := &Cavity{
-		grid: s.Grid, start: s.Start, length: s.Length,
+		grid: s.Grid, start: s.Start, length: s.Length, lead: s.Lead,
 		ringing: ringing, law: law, parity: parity, parameters: parameters,
 		offsetIndex: 3 + 2*len(ringing.tracks), echoPhaseIndex: 4 + 2*len(ringing.tracks),
 	}
@@ -222,6 +223,10 @@ func (c *Cavity) Fill(theta []float64, h *Polarizations) error {
 		}
 		h.addEchoing(w, c.grid, c.eRe[:reach], c.eIm[:reach], c.tRe[:reach], c.tIm[:reach])
 		h.add(w, c.grid, reach)
+		// The echoes are those of the ringdown alone.
+		if c.lead > 0 {
+			h.addLead(w, c.grid, c.lead)
+		}
 	}
 	if late != 0 {
 		h.delay(late, c.grid, c.cos, c.sin)

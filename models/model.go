@@ -90,6 +90,10 @@ type Settings struct {
 	// Start is the analysis start in seconds after the event time: the origin
 	// of t in the transform, and the default of the parameter start_time.
 	Start float64
+	// Lead, if above zero, lets the signal rise smoothly within that many seconds
+	// before its start (see lead.go), for a likelihood that marginalises over
+	// them. Zero is a signal that begins with a jump.
+	Lead float64
 	// Length of data after the analysis start, s; echoes that would arrive
 	// later are left out.
 	Length float64

@@ -9,6 +9,7 @@ import "strconv"
 type Ringdown struct {
 	grid       Grid
 	start      float64 // s after the event time, where t = 0 lies
+	lead       float64 // s
 	ringing    *ringing
 	parameters []Parameter
 	cos, sin   []float64 // scratch space
@@ -39,7 +40,7 @@ func newRingdown(s Settings) (Model, error) {
 	if err != nil {
 		return nil, err
 	}
-	r := &Ringdown{grid: s.Grid, start: s.Start, ringing: ringing, parameters: parameters}
+	r := &Ringdown{grid: s.Grid, start: s.Start, lead: s.Lead, ringing: ringing, parameters: parameters}
 	return r.Clone(), nil
 }
 
@@ -70,6 +71,9 @@ func (r *Ringdown) Fill(theta []float64, h *Polarizations) error {
 			return err
 		}
 		h.add(w, r.grid, 0)
+		if r.lead > 0 {
+			h.addLead(w, r.grid, r.lead)
+		}
 	}
 	if late := theta[2] - r.start; late != 0 {
 		h.delay(late, r.grid, r.cos, r.sin)

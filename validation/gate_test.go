@@ -118,7 +118,7 @@ func gatedLikelihood(t *testing.T, segment []float64, gate int) *likelihood.Gaus
 	if err != nil {
 		t.Fatal(err)
 	}
-	density, err := likelihood.Loud(spectrum.Density, 1/gateSpan, gateLow, gateHigh, 4/gateLength)
+	density, err := likelihood.Loud(spectrum.Density, spectrum.Density, 1/gateSpan, gateLow, gateHigh, 4/gateLength)
 	if err != nil {
 		t.Fatal(err)
 	}

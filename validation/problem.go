@@ -98,7 +98,7 @@ func NewCavityProblem(seed uint64) (*Problem, error) {
 	if err != nil {
 		return nil, err
 	}
-	density, err := likelihood.Loud(spectrum.Density, 1/problemDuration, problemLow, problemHigh, 4*problemRate/problemGate)
+	density, err := likelihood.Loud(spectrum.Density, spectrum.Density, 1/problemDuration, problemLow, problemHigh, 4*problemRate/problemGate)
 	if err != nil {
 		return nil, err
 	}

@@ -21,13 +21,17 @@ func (a Analysis) ramp() float64 {
 	return rampPerGate / a.Duration
 }
 
+// pastBand is how far beyond the band's upper edge, as a factor, the model goes
+// on: there the loud noise exceeds that of the band by less than below it.
+const pastBand = 1.25
+
 // grid is where the model is computed: the band and its joins, in which the
 // noise is not loud enough yet for what the model leaves out not to matter. The
 // joins may reach into the transitions of the conditioning filters, which change
 // the signal there; by then the noise is loud enough for that.
 func (a Analysis) grid() models.Grid {
 	first := int(math.Ceil((a.Low-a.ramp())*a.Duration - 1e-9))
-	last := int(math.Floor((a.High+a.ramp())*a.Duration + 1e-9))
+	last := int(math.Floor((pastBand*a.High+a.ramp())*a.Duration + 1e-9))
 	first, last = max(1, first), min(last, a.samples()/2-1)
 	return models.Grid{First: first, Count: last - first + 1, Step: 1 / a.Duration}
 }

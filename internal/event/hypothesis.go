@@ -30,7 +30,13 @@ type bend struct {
 // newHypothesis builds the model and orders the priors as the model's
 // parameters are.
 func newHypothesis(h Hypothesis, c *Config, g *likelihood.Gaussian) (*hypothesis, error) {
-	model, err := models.New(modelSettings(h, c))
+	settings := modelSettings(h, c)
+	// A signal that is known to begin in the gate may rise in there. One whose
+	// start is free may begin after it, where a rise would be seen.
+	if low, high := h.Priors["start_time"].Prior.Support(); low == high && high <= c.Analysis.Start {
+		settings.Lead = c.Analysis.Gate
+	}
+	model, err := models.New(settings)
 	if err != nil {
 		return nil, fmt.Errorf("hypothesis %s: %w", h.Name, err)
 	}

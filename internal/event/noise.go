@@ -58,6 +58,7 @@ func (p *Prepared) density(key string, s Site, series *strain.Series, from, to i
 	if err != nil {
 		return nil, "", c.fault(key, err)
 	}
+	measured := spectrum.Density
 	if smooth < 0 {
 		smooth = a.Gate
 	}
@@ -76,7 +77,7 @@ func (p *Prepared) density(key string, s Site, series *strain.Series, from, to i
 			p.Notes = append(p.Notes, fmt.Sprintf("The noise model of %s correlates samples over %g s, longer than the gate of %g s: the ends of the segment are not independent.", s.Code, smooth, a.Gate))
 		}
 	}
-	loud, err := likelihood.Loud(spectrum.Density, step, a.Low, a.High, a.ramp())
+	loud, err := likelihood.Loud(spectrum.Density, measured, step, a.Low, a.High, a.ramp())
 	if err != nil {
 		return nil, "", c.fault(key, err)
 	}

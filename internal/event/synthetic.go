@@ -90,6 +90,9 @@ func lowestOf(curve func(float64) float64, limit float64) float64 {
 // injectionLength is the shortest stretch on which an injection is computed, s.
 const injectionLength = 8.0
 
+// injectionRise is how long before its start an injected signal begins, s.
+const injectionRise = 0.05
+
 // inject adds the known signal to a site's strain.
 func (p *Prepared) inject(series *strain.Series, plus, cross, delay float64) error {
 	c := p.Config
@@ -98,10 +101,12 @@ func (p *Prepared) inject(series *strain.Series, plus, cross, delay float64) err
 	n := 2 * int(length*rate/2)
 	length = float64(n) / rate
 	// A quarter of the stretch lies before the signal.
-	const lead = 0.25
+	const before = 0.25
 	settings := c.injectionSettings()
 	settings.Grid = models.Grid{First: 1, Count: n/2 - 1, Step: 1 / length}
-	settings.Length = (1 - lead) * length
+	settings.Length = (1 - before) * length
+	// Rising before its start as a merger does, within a few cycles.
+	settings.Lead = injectionRise
 	model, err := models.New(settings)
 	if err != nil {
 		return c.fault("injection", err)
@@ -118,9 +123,9 @@ func (p *Prepared) inject(series *strain.Series, plus, cross, delay float64) err
 	if err := model.Fill(theta, h); err != nil {
 		return c.fault("injection", err)
 	}
-	at := series.Offset(p.geocentre+delay) - lead*length
+	at := series.Offset(p.geocentre+delay) - before*length
 	first := int(math.Floor(at * rate))
-	late := at - float64(first)/rate + lead*length
+	late := at - float64(first)/rate + before*length
 	spectrum := make([]complex128, n/2+1)
 	for j := range settings.Grid.Count {
 		f := settings.Grid.Frequency(j)
