@@ -15,6 +15,9 @@ type gate struct {
 	n      int               // samples in the gate, at the segment's start
 	factor blas64.Triangular // lower L with L L' = P_GG; unset when n is 0
 	logDet float64           // ln det P_GG
+	// inverse is L^-1, row by row, n of them of stride n. It costs as much as L
+	// to apply, but its rows are plain dot products, which are vectorised.
+	inverse []float64
 }
 
 // newGate factorises P_GG for the precision (1/eigenvalue of the circulant
@@ -40,15 +43,27 @@ func newGate(precision []float64, samples, n int) (*gate, error) {
 		return nil, fmt.Errorf("likelihood: the gate's %d x %d precision matrix is not positive definite in double precision; its noise density spans too large a range", n, n)
 	}
 	g.factor = t
+	inverse := blas64.General{Rows: n, Cols: n, Stride: n, Data: make([]float64, n*n)}
+	for i := range n {
+		inverse.Data[i*n+i] = 1
+	}
+	blas64.Trsm(blas.Left, blas.NoTrans, 1, t, inverse)
+	g.inverse = inverse.Data
 	for i := range n {
 		g.logDet += 2 * math.Log(t.Data[i*n+i])
 	}
 	return g, nil
 }
 
-// halfSolve overwrites x (length n) with L^-1 x; |x|^2 is then x' P_GG^-1 x.
-func (g *gate) halfSolve(x []float64) {
-	blas64.Trsv(blas.NoTrans, g.factor, blas64.Vector{N: g.n, Inc: 1, Data: x})
+// square returns x' P_GG^-1 x = |L^-1 x|^2 for x of length n.
+func (g *gate) square(x []float64) float64 {
+	sum := 0.0
+	for i := range g.n {
+		row := g.inverse[i*g.n : i*g.n+i+1]
+		y := blas64.Dot(blas64.Vector{N: i + 1, Inc: 1, Data: row}, blas64.Vector{N: i + 1, Inc: 1, Data: x[:i+1]})
+		sum += y * y
+	}
+	return sum
 }
 
 // solve overwrites x with P_GG^-1 x.
@@ -61,13 +76,12 @@ func (g *gate) solve(x []float64) {
 	blas64.Trsv(blas.Trans, g.factor, v)
 }
 
-// scale makes the factor one for samples that come multiplied by w: from then on
-// halfSolve(w x) is what halfSolve(x) was.
+// scale makes square take samples that come multiplied by w: square(w x) is then
+// what square(x) was.
 func (g *gate) scale(w []float64) {
 	for i := range g.n {
-		row := g.factor.Data[i*g.n : i*g.n+i+1]
-		for j := range row {
-			row[j] *= w[i]
+		for j := range i + 1 {
+			g.inverse[i*g.n+j] /= w[j]
 		}
 	}
 }

@@ -76,11 +76,7 @@ func (w *Worker) products(s *prepared, h *models.Polarizations) (cross, square f
 		w.fft.Sequence(w.sequence, w.coefficients)
 		copy(w.gated, w.sequence)
 	}
-	s.gate.halfSolve(w.gated)
-	for _, v := range w.gated {
-		square -= v * v
-	}
-	return cross, square
+	return cross, square - s.gate.square(w.gated)
 }
 
 // project sums <d|h> and the ungated <h|h> over the band and leaves the

@@ -39,7 +39,9 @@ func (h *Polarizations) addLead(w wave, g Grid, seconds float64) {
 		angular := float64(g.First+j) * step
 		near, far := angular-w.omegaRe, angular+w.omegaRe
 		// 1/s, then (1/s)(1 + slope/s).
-		vi, ui := 1/(near*near+g2), 1/(far*far+g2)
+		nearSquare, farSquare := near*near+g2, far*far+g2
+		both := 1 / (nearSquare * farSquare)
+		vi, ui := both*farSquare, both*nearSquare
 		vr, ur := vi*rate, ui*rate
 		vi, ui = vi*near, ui*far
 		vr, vi = vr+slope*(vr*vr-vi*vi), vi+slope*2*vr*vi

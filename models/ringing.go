@@ -176,7 +176,10 @@ func (h *Polarizations) add(w wave, g Grid, from int) {
 	for j := range plusRe {
 		angular := float64(g.First+from+j) * step
 		near, far := angular-w.omegaRe, angular+w.omegaRe
-		vi, ui := -1/(near*near+y2), -1/(far*far+y2)
+		// One division for both reciprocals.
+		nearSquare, farSquare := near*near+y2, far*far+y2
+		both := -1 / (nearSquare * farSquare)
+		vi, ui := both*farSquare, both*nearSquare
 		vr, ur := vi*w.omegaIm, ui*w.omegaIm
 		vi, ui = vi*near, ui*far
 		// p U + conj(p) V
@@ -205,7 +208,10 @@ func (h *Polarizations) addEchoing(w wave, g Grid, eRe, eIm, tRe, tIm []float64)
 	for j := range eRe {
 		angular := float64(g.First+j) * step
 		near, far := angular-w.omegaRe, angular+w.omegaRe
-		vi, ui := -1/(near*near+y2), -1/(far*far+y2)
+		// One division for both reciprocals.
+		nearSquare, farSquare := near*near+y2, far*far+y2
+		both := -1 / (nearSquare * farSquare)
+		vi, ui := both*farSquare, both*nearSquare
 		vr, ur := vi*w.omegaIm, ui*w.omegaIm
 		vi, ui = vi*near, ui*far
 		// V conj(e) and U t

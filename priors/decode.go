@@ -101,7 +101,7 @@ func Decode(kind string, fields map[string]any) (Prior, error) {
 			continue
 		}
 		if _, optional := f.optional[key]; !optional && !slices.Contains(f.need, key) {
-			return nil, &FieldError{key, "an unknown key", f.keysWanted(kind)}
+			return nil, &FieldError{key, fmt.Sprint(fields[key]), "a known key: " + f.keysWanted(kind)}
 		}
 		value, ok := asFloat(fields[key])
 		if !ok {

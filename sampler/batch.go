@@ -88,7 +88,7 @@ func (r *runner) whole(ctx context.Context) (*Outcome, error) {
 		}
 		if most := r.set.MaxCalls; most != 0 && r.prior.calls+r.out.Calls >= most {
 			r.out.Status, r.out.Partial = CallLimit, true
-			r.out.note("MaxCalls = %d reached with ln(1 + Z'/Z) = %.3g nat remaining, %.3g wanted", most, r.remaining(), r.set.Remaining)
+			r.out.note("the limit of %d calls was reached with ln(1 + Z'/Z) = %.3g nat remaining, %.3g wanted", most, r.remaining(), r.set.Remaining)
 			break
 		}
 		again, err := r.batch(ctx)

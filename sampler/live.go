@@ -73,7 +73,7 @@ func (r *runner) finish() {
 	r.bury(len(r.l))
 	o := r.out
 	if m := r.memory; m.peak > doubtfulMemory {
-		o.note("slices of %.0f steps still remember their start (correlation %.2f): raise LivePoints or SliceSteps and compare", mostSteps*m.least, m.peak)
+		o.note("slices of %.0f steps still remember their start (correlation %.2f): use more live points and compare", mostSteps*m.least, m.peak)
 	}
 	for i := range o.LogLikelihood {
 		o.Points = append(o.Points, r.flat[i*r.dim:(i+1)*r.dim:(i+1)*r.dim])

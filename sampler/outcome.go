@@ -95,13 +95,13 @@ func (o *Outcome) judge() {
 	var doubts []string
 	if p := min(o.InsertionRankP, o.InsertionRankBlockP); p < doubtfulP {
 		o.Warnings = append(o.Warnings, fmt.Sprintf("insertion ranks are not uniform: p = %.2g", p))
-		doubts = append(doubts, "new points were not drawn fairly: raise LivePoints or SliceSteps")
+		doubts = append(doubts, "new points were not drawn fairly: use more live points")
 	}
 	if o.Partial {
 		doubts = append(doubts, "the run did not end by itself ("+o.Status.String()+"): let it finish")
 	}
 	if o.LivePoints < 10*o.dim() {
-		doubts = append(doubts, fmt.Sprintf("%d live points are few in %d dimensions: raise LivePoints", o.LivePoints, o.dim()))
+		doubts = append(doubts, fmt.Sprintf("%d live points are few in %d dimensions: use more", o.LivePoints, o.dim()))
 	}
 	o.Verdict = "sound"
 	if len(doubts) > 0 {

@@ -76,7 +76,7 @@ func Run(ctx context.Context, newTarget func() (Target, error), s Settings) (*Ou
 			return result, err
 		}
 		if len(parts) == s.MaxRuns {
-			result.note("%d runs reached an error of %.3g nat, %.3g wanted: raise MaxRuns or LivePoints", len(parts), result.LogEvidenceError, s.EvidenceError)
+			result.note("%d runs reached an error of %.3g nat, %.3g wanted: use more live points", len(parts), result.LogEvidenceError, s.EvidenceError)
 			result.judge()
 			return result, nil
 		}
@@ -103,7 +103,7 @@ func conclude(parts []*Outcome, s Settings, status Status) (*Outcome, error) {
 		result.Partial = true
 		result.note("interrupted at an error of %.3g nat, %.3g wanted", result.LogEvidenceError, s.EvidenceError)
 	} else {
-		result.note("MaxCalls = %d reached at an error of %.3g nat, %.3g wanted", s.MaxCalls, result.LogEvidenceError, s.EvidenceError)
+		result.note("the limit of %d calls was reached at an error of %.3g nat, %.3g wanted", s.MaxCalls, result.LogEvidenceError, s.EvidenceError)
 	}
 	result.judge()
 	return result, nil

@@ -112,6 +112,11 @@ func (d *decoder) config(c *Config, t *table) {
 	if c.Injection != nil {
 		d.checkInjection(c)
 	}
+	for _, s := range c.Sites {
+		if c.Analysis.Gate == 0 && s.Strain != "" {
+			d.fail("analysis.gate", "0", fmt.Sprintf("above 0 s: the strain of %s does not begin and end in silence, and without a gate the segment's ends would be taken to join", s.Code))
+		}
+	}
 	if c.Event.TimeAt != "" && !c.hasSite(c.Event.TimeAt) {
 		d.fail("event.time_at", show(c.Event.TimeAt), "the code of a [[site]], or no such key for the geocentre")
 	}

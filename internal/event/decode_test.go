@@ -162,7 +162,7 @@ func TestDecodeErrors(t *testing.T) {
 		{"in injection", "values = {", "shift = 1\nvalues = {", "shift", "injection.shift", "1", "values"},
 		{"in injection values", "spin = 0.69", "spin = 0.69, charge = 0.1", "charge", "injection.values.charge", "0.1", "mass, spin"},
 		{"in hypothesis", `name  = "surface"`, "name = \"surface\"\nsurface = 1", "surface = 1", "hypothesis[1].surface", "1", "reflectivity"},
-		{"in a prior", "high = 110.0", "high = 110.0, step = 1", "step", "prior.mass.step", "unknown", "low, high"},
+		{"in a prior", "high = 110.0", "high = 110.0, step = 1", "step", "prior.mass.step", "1", "known key: uniform takes low, high"},
 		{"in a hypothesis's prior", surface, surface + "prior = { charge = { kind = \"fixed\", value = 0.0 } }\n", "charge", "hypothesis[1].prior.charge", "a prior", "echo_phase"},
 		{"prior for nobody", "offset       =", "charge = { kind = \"fixed\", value = 1.0 }\noffset =", "charge", "prior.charge", "a prior", "a parameter of one of the hypotheses"},
 

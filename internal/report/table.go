@@ -16,7 +16,7 @@ func Table(out io.Writer, w *Weighing) error {
 	var text bytes.Buffer
 	fmt.Fprintf(&text, "%s   (seed %d, knell %s)\n", w.Event, w.Seed, w.Version)
 	if w.Partial {
-		fmt.Fprint(&text, "PARTIAL: the run was interrupted; no number below is final\n")
+		fmt.Fprint(&text, "PARTIAL: a run ended before it converged; no number below is final\n")
 	}
 	for _, part := range []func(io.Writer, *Weighing) error{
 		writeEvidences, writeRatios, writeParameters, writeCautions,
