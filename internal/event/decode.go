@@ -1,22 +1,15 @@
 package event
 
 import (
-	"bytes"
 	"errors"
 	"fmt"
 	"math"
 	"os"
 	"path/filepath"
-	"regexp"
 	"sort"
 	"strings"
 
 	"github.com/BurntSushi/toml"
-
-	"knell/likelihood/site"
-	"knell/likelihood/strain"
-	"knell/models"
-	"knell/priors"
 )
 
 // Defaults of keys that a file may leave out.
@@ -75,6 +68,7 @@ func Decode(name string, text []byte) (*Config, error) {
 }
 
 func positive(x float64) bool    { return x > 0 }
+
 func notNegative(x float64) bool { return x >= 0 }
 
 const (
@@ -149,255 +143,6 @@ func (d *decoder) event(e *Event, t *table) {
 	e.Polarization = t.numberOr("polarization", 0, wantAngle, nil)
 	e.Inclination = t.numberOr("inclination", 0, "an angle from 0 to pi rad", func(x float64) bool { return x >= 0 && x <= math.Pi })
 	t.finish()
-}
-
-var siteCode = regexp.MustCompile(`^[A-Z][A-Z0-9]$`)
-
-func (d *decoder) site(t *table, before []Site) Site {
-	const wantCode = `two characters, e.g. "H1"`
-	s := Site{Code: t.text("code", wantCode)}
-	if d.err == nil && !siteCode.MatchString(s.Code) {
-		t.fail("code", wantCode)
-	}
-	for _, b := range before {
-		if b.Code == s.Code {
-			t.fail("code", "each site once")
-		}
-	}
-	if t.has("geometry") {
-		g := t.sub("geometry", wantTable)
-		s.Geometry = &Geometry{
-			Latitude:  g.number("latitude", "an angle from -pi/2 to pi/2 rad", func(x float64) bool { return math.Abs(x) <= math.Pi/2 }),
-			Longitude: g.number("longitude", "an angle in rad, east positive", nil),
-			Height:    g.numberOr("height", 0, "metres", nil),
-			XAzimuth:  g.number("x_azimuth", "an angle in rad, clockwise from north", nil),
-			YAzimuth:  g.number("y_azimuth", "an angle in rad, clockwise from north", nil),
-			XTilt:     g.numberOr("x_tilt", 0, wantAngle, nil),
-			YTilt:     g.numberOr("y_tilt", 0, wantAngle, nil),
-		}
-		g.finish()
-	} else if d.err == nil {
-		if _, err := site.Lookup(s.Code); err != nil {
-			t.fail("code", fmt.Sprintf("a site of the catalogue (%s), or a geometry = {...} beside it", strings.Join(site.Codes(), ", ")))
-		}
-	}
-	switch {
-	case t.has("strain") && t.has("synthetic"):
-		t.fail("strain", "either strain or synthetic, not both")
-	case t.has("synthetic"):
-		y := t.sub("synthetic", wantTable)
-		s.Synthetic = &Synthetic{
-			Curve:  y.choiceOr("curve", "", strain.CurveNames()),
-			Seed:   uint64(y.integerOr("seed", 1, "a whole number, 0 or more", func(n int64) bool { return n >= 0 })),
-			Length: y.numberOr("length", DefaultLength, wantSeconds, positive),
-			Quiet:  y.flagOr("quiet", false),
-		}
-		y.finish()
-	default:
-		s.Strain = t.text("strain", wantFilePath+", or synthetic = {...}")
-	}
-	s.Noise = d.noise(t, s)
-	t.finish()
-	return s
-}
-
-func (d *decoder) noise(t *table, s Site) Noise {
-	n := Noise{From: "data", Average: "median", Segment: DefaultSegment, Smooth: -1}
-	if !t.has("noise") {
-		t.known = append(t.known, "noise")
-		return n
-	}
-	t = t.sub("noise", wantTable)
-	n.From = t.choiceOr("from", "data", []string{"data", "curve", "file"})
-	switch n.From {
-	case "data":
-		n.Average = t.choiceOr("average", "median", []string{"median", "mean"})
-		n.Segment = t.numberOr("segment", DefaultSegment, wantSeconds, positive)
-	case "curve":
-		fallback := ""
-		if s.Synthetic != nil {
-			fallback = s.Synthetic.Curve
-		}
-		n.Curve = t.choiceOr("curve", fallback, strain.CurveNames())
-	case "file":
-		n.File = t.text("file", wantFilePath)
-	}
-	n.Smooth = t.numberOr("smooth", -1, "seconds, 0 or more", notNegative)
-	t.finish()
-	return n
-}
-
-func (d *decoder) analysis(a *Analysis, t *table) {
-	a.SampleRate = t.number("sample_rate", "Hz, a number above zero", positive)
-	a.Duration = t.number("duration", wantSeconds, positive)
-	a.Start = t.numberOr("start", 0, "seconds after event.time", nil)
-	a.Gate = t.numberOr("gate", DefaultGate, "seconds, 0 or more", notNegative)
-	const wantBand = "[low, high] in Hz with 0 < low < high"
-	v, _ := t.take("band")
-	list, _ := v.([]any)
-	if len(list) != 2 {
-		t.fail("band", wantBand)
-	} else {
-		low, ok1 := asNumber(list[0])
-		high, ok2 := asNumber(list[1])
-		a.Low, a.High = low, high
-		if !ok1 || !ok2 || !(low > 0 && low < high) {
-			t.fail("band", wantBand)
-		}
-	}
-	t.finish()
-	if d.err != nil {
-		return
-	}
-	if nyquist := a.SampleRate / 2; a.High >= nyquist {
-		t.fail("band", fmt.Sprintf("a band below the Nyquist frequency of %g Hz (half of analysis.sample_rate)", nyquist))
-	}
-	// 1.1 s at 1000 Hz are 1100.0000000000002 samples in binary.
-	n := a.Duration * a.SampleRate
-	switch whole := math.Round(n); {
-	case !(math.Abs(n-whole) <= 1e-9*n) || math.Mod(whole, 2) != 0:
-		t.fail("duration", fmt.Sprintf("an even number of samples; %g s at %g Hz are %.12g", a.Duration, a.SampleRate, n))
-	case n > maxSamples:
-		t.fail("duration", fmt.Sprintf("at most %d samples; %g s at %g Hz are %.12g", maxSamples, a.Duration, a.SampleRate, n))
-	default:
-		a.Duration = whole / a.SampleRate
-	}
-	if a.Gate >= a.Duration/2 {
-		t.fail("gate", fmt.Sprintf("less than half of the duration of %g s", a.Duration))
-	}
-	if a.Gate > 0 && a.gateSamples() < 1 {
-		t.fail("gate", fmt.Sprintf("0 or at least one sample, %g s", 1/a.SampleRate))
-	}
-	if a.Gate*a.SampleRate > maxGate {
-		t.fail("gate", fmt.Sprintf("at most %d samples, %g s at this sample rate", maxGate, maxGate/a.SampleRate))
-	}
-	if a.Low < 2/a.Duration {
-		t.fail("band", fmt.Sprintf("a lower edge of at least %g Hz, two cycles in the duration", 2/a.Duration))
-	}
-	if d.err == nil && math.Floor(a.High*a.Duration+1e-9) < math.Ceil(a.Low*a.Duration-1e-9) {
-		t.fail("band", fmt.Sprintf("at least one multiple of %g Hz, one over the duration, within it", 1/a.Duration))
-	}
-}
-
-const (
-	maxSamples = 1 << 24 // of a segment
-	maxGate    = 8192    // samples; bounds the factorised matrix to 512 MiB
-)
-
-func (d *decoder) sampler(s *Sampler, top *table) {
-	t := &table{d: d, path: "sampler"}
-	if top.has("sampler") {
-		t = top.sub("sampler", "a table [sampler]")
-	}
-	s.LivePoints = int(t.integerOr("live_points", DefaultLivePoints, "a whole number from 100 to 1000000", func(n int64) bool { return n >= 100 && n <= 1e6 }))
-	s.EvidenceError = t.numberOr("evidence_error", DefaultEvidenceError, "nat, 0.01 or more", func(x float64) bool { return x >= 0.01 })
-	s.Remaining = t.numberOr("remaining", DefaultRemaining, "nat, above 0 and at most 1", func(x float64) bool { return x > 0 && x <= 1 })
-	s.MaxCalls = t.integerOr("max_calls", 0, "0 for no limit, or at least live_points", func(n int64) bool { return n == 0 || n >= int64(s.LivePoints) })
-	t.finish()
-}
-
-func (d *decoder) injection(t *table) *Injection {
-	in := &Injection{Values: map[string]float64{}}
-	in.Model = t.choiceOr("model", "", models.Names())
-	in.Modes = t.texts("modes", `a list of modes, e.g. ["2,2,0"]`)
-	in.Reflectivity = t.textOr("reflectivity", "", "one of "+strings.Join(models.ReflectivityNames(), ", "))
-	in.Parity = t.textOr("parity", "", `"odd" or "even"`)
-	values := t.sub("values", "a table of numbers by parameter")
-	for _, name := range sortedKeys(values.values) {
-		in.Values[name] = values.number(name, "a number", nil)
-	}
-	t.finish()
-	return in
-}
-
-// checkInjection compares the injection's values with its model's parameters.
-func (d *decoder) checkInjection(c *Config) {
-	list, err := models.Describe(c.injectionSettings())
-	if err != nil {
-		d.setting(err, "injection")
-		return
-	}
-	known := map[string]bool{}
-	for _, p := range list {
-		known[p.Name] = true
-		v, given := c.Injection.Values[p.Name]
-		key := "injection.values." + p.Name
-		switch {
-		case !given && !p.HasDefault:
-			d.fail(key, "nothing", fmt.Sprintf("a number (%s)", p.Note))
-		case given && !(v >= p.Low && v <= p.High):
-			d.fail(key, fmt.Sprint(v), fmt.Sprintf("%g to %g", p.Low, p.High))
-		}
-	}
-	for _, name := range sortedKeys(c.Injection.Values) {
-		if !known[name] {
-			d.fail("injection.values."+name, fmt.Sprint(c.Injection.Values[name]), "a parameter of the model "+c.Injection.Model+": "+names(list))
-		}
-	}
-}
-
-var hypothesisName = regexp.MustCompile(`^[A-Za-z0-9][A-Za-z0-9_-]{0,63}$`)
-
-func (d *decoder) hypothesis(t *table, c *Config, shared map[string]NamedPrior, used map[string]bool) Hypothesis {
-	const wantName = "letters, digits, - and _, at most 64"
-	h := Hypothesis{Name: t.text("name", wantName)}
-	if d.err == nil && !hypothesisName.MatchString(h.Name) {
-		t.fail("name", wantName)
-	}
-	for _, other := range c.Hypotheses {
-		// They become files, and some file systems do not tell capitals apart.
-		if strings.EqualFold(other.Name, h.Name) {
-			t.fail("name", "each hypothesis under its own name, whatever its capitals")
-		}
-	}
-	h.Model = t.choiceOr("model", "", models.Names())
-	h.Modes = t.texts("modes", `a list of modes, e.g. ["2,2,0"]`)
-	h.Reflectivity = t.textOr("reflectivity", "", "one of "+strings.Join(models.ReflectivityNames(), ", "))
-	h.Parity = t.textOr("parity", "", `"odd" or "even"`)
-	own := map[string]NamedPrior{}
-	if t.has("prior") {
-		own = d.priors(t.sub("prior", wantTable))
-	} else {
-		t.known = append(t.known, "prior")
-	}
-	t.finish()
-	if d.err != nil {
-		return h
-	}
-	d.assign(&h, t, c, shared, own, used)
-	return h
-}
-
-func (d *decoder) priors(t *table) map[string]NamedPrior {
-	out := map[string]NamedPrior{}
-	for _, name := range sortedKeys(t.values) {
-		p := t.sub(name, `a prior, e.g. { kind = "uniform", low = 0.0, high = 1.0 }`)
-		if d.err != nil {
-			return out
-		}
-		kind := p.text("kind", "one of "+strings.Join(priors.Kinds(), ", "))
-		fields := map[string]any{}
-		for k, v := range p.values {
-			if k != "kind" {
-				fields[k] = v
-			}
-		}
-		if d.err != nil {
-			return out
-		}
-		prior, err := priors.Decode(kind, fields)
-		if err != nil {
-			var fe *priors.FieldError
-			if errors.As(err, &fe) {
-				d.fail(p.key(fe.Key), fe.Got, fe.Want)
-			} else {
-				d.fail(p.path, err.Error(), "")
-			}
-			return out
-		}
-		out[name] = NamedPrior{prior, p.path}
-	}
-	return out
 }
 
 func sortedKeys[V any](m map[string]V) []string {
