@@ -1,6 +1,7 @@
 package event
 
 import (
+	"bytes"
 	"errors"
 	"fmt"
 	"math"
@@ -67,7 +68,7 @@ func Decode(name string, text []byte) (*Config, error) {
 	return c, nil
 }
 
-func positive(x float64) bool    { return x > 0 }
+func positive(x float64) bool { return x > 0 }
 
 func notNegative(x float64) bool { return x >= 0 }
 
