@@ -6,7 +6,6 @@ import (
 	"strings"
 	"testing"
 
-	"knell/configs"
 	"knell/internal/random"
 )
 
@@ -75,14 +74,7 @@ func BenchmarkCavity(b *testing.B) {
 func BenchmarkWeigh(b *testing.B) {
 	for _, workers := range []int{1, 2} {
 		b.Run(fmt.Sprintf("workers=%d", workers), func(b *testing.B) {
-			file, text, err := configs.Demo("surface")
-			if err != nil {
-				b.Fatal(err)
-			}
-			c, err := Decode(file, text)
-			if err != nil {
-				b.Fatal(err)
-			}
+			c := demo(b, "surface")
 			c.Hypotheses = c.Hypotheses[1:]
 			c.Sampler.LivePoints, c.Sampler.EvidenceError = 100, 10
 			p, err := Load(c)
@@ -102,15 +94,7 @@ func BenchmarkWeigh(b *testing.B) {
 
 // TestLikelihoodAllocatesNothing covers the whole road of a call.
 func TestLikelihoodAllocatesNothing(t *testing.T) {
-	file, text, err := configs.Demo("surface")
-	if err != nil {
-		t.Fatal(err)
-	}
-	c, err := Decode(file, text)
-	if err != nil {
-		t.Fatal(err)
-	}
-	p, err := Load(c)
+	p, err := Load(demo(t, "surface"))
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -5,22 +5,13 @@ import (
 	"sort"
 	"testing"
 
-	"knell/configs"
 	"knell/internal/random"
 )
 
 // Straight coordinates move no prior mass: uniform points of the cube give every
 // parameter its prior, and pairs of parameters stay independent.
 func TestStraightCoordinatesKeepThePrior(t *testing.T) {
-	file, text, err := configs.Demo("surface")
-	if err != nil {
-		t.Fatal(err)
-	}
-	c, err := Decode(file, text)
-	if err != nil {
-		t.Fatal(err)
-	}
-	p, err := Load(c)
+	p, err := Load(demo(t, "surface"))
 	if err != nil {
 		t.Fatal(err)
 	}

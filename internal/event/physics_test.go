@@ -8,6 +8,7 @@ import (
 	"strings"
 	"testing"
 
+	"knell/configs"
 	"knell/internal/random"
 	"knell/likelihood"
 	"knell/likelihood/site"
@@ -32,6 +33,20 @@ func mustLoad(t *testing.T, text string) *Prepared {
 		t.Fatal(err)
 	}
 	return p
+}
+
+// demo is an embedded demo event's config.
+func demo(t testing.TB, name string) *Config {
+	t.Helper()
+	file, text, err := configs.Demo(name)
+	if err != nil {
+		t.Fatal(err)
+	}
+	c, err := Decode(file, text)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return c
 }
 
 func (p *Prepared) mustAt(t *testing.T, g *likelihood.Gaussian, theta []float64) float64 {
