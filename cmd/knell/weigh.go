@@ -63,15 +63,15 @@ func weigh(c *cli.Context) error {
 			})
 		}
 	}
-	result, posteriors, err := prepared.Weigh(c.Context, options)
+	result, posteriors, failure := prepared.Weigh(c.Context, options)
 	// Before the table, which may go to the same terminal.
 	done()
-	if err != nil {
+	if failure != nil && len(result.Hypotheses) == 0 {
 		if c.String("out") == "" {
 			// Made for nothing; if it is no longer empty it stays.
 			_ = os.Remove(directory)
 		}
-		return err
+		return failure
 	}
 	for i := range result.Hypotheses {
 		result.Hypotheses[i].Posterior = report.PosteriorFile(result.Hypotheses[i].Name, ".csv")
@@ -92,6 +92,9 @@ func weigh(c *cli.Context) error {
 	}
 	if err != nil {
 		return err
+	}
+	if failure != nil {
+		return failure
 	}
 	if result.Partial && c.Context.Err() != nil {
 		return errInterrupted

@@ -2,6 +2,7 @@ package event
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"math"
 	"time"
@@ -27,7 +28,8 @@ type Progress struct {
 }
 
 // Weigh samples every hypothesis and compares them. A cancelled context ends it
-// with a valid result of what was reached, marked as partial.
+// with a valid result of what was reached, marked as partial. So does an error,
+// which comes with the hypotheses that were weighed before it.
 func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []report.Posterior, error) {
 	c := p.Config
 	w := &report.Weighing{
@@ -38,6 +40,7 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 		Cautions:         append([]string(nil), p.Notes...),
 	}
 	var posteriors []report.Posterior
+	var failure error
 	for i, h := range p.hypotheses {
 		if ctx.Err() != nil {
 			w.Partial = true
@@ -60,13 +63,22 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 				}
 			},
 		})
-		if err != nil {
-			return nil, nil, fmt.Errorf("hypothesis %s: %w", h.Name, err)
+		if err != nil && ctx.Err() != nil && errors.Is(err, ctx.Err()) {
+			w.Partial = true
+			w.Cautions = append(w.Cautions, fmt.Sprintf("interrupted before hypothesis %s had its first live points", h.Name))
+			continue
 		}
 		seconds := time.Since(began).Seconds()
-		entry, posterior, err := p.summarise(h, outcome)
+		var entry report.Hypothesis
+		var posterior report.Posterior
+		if err == nil {
+			entry, posterior, err = p.summarise(h, outcome)
+		}
 		if err != nil {
-			return nil, nil, fmt.Errorf("hypothesis %s: %w", h.Name, err)
+			failure = fmt.Errorf("hypothesis %s: %w", h.Name, err)
+			w.Partial = true
+			w.Cautions = append(w.Cautions, failure.Error())
+			break
 		}
 		entry.Seconds = report.Number(seconds)
 		w.Partial = w.Partial || outcome.Partial
@@ -83,7 +95,7 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 		}
 	}
 	w.Cautions = append(w.Cautions, cautions(w)...)
-	return w, posteriors, nil
+	return w, posteriors, failure
 }
 
 // cautions are the doubts particular to this result; report adds what holds of

@@ -2,13 +2,16 @@ package event
 
 import (
 	"context"
+	"errors"
 	"reflect"
 	"slices"
 	"strings"
 	"testing"
 
 	"knell/internal/report"
+	"knell/models"
 )
+
 
 // brief is tiny with noise and so few calls that the runs end at that limit: for
 // tests of what happens around the sampling.
@@ -154,3 +157,31 @@ func TestCancelled(t *testing.T) {
 		}
 	})
 }
+
+// What was weighed before a hypothesis fails is not lost.
+func TestWeighKeepsWhatItHas(t *testing.T) {
+	c := mustLoad(t, twoSites).Config
+	second := c.Hypotheses[0]
+	second.Name = "broken"
+	c.Hypotheses = append(c.Hypotheses[:1], second)
+	c.Sampler.LivePoints, c.Sampler.MaxCalls, c.Sampler.EvidenceError = 100, 400, 10
+	p, err := Load(c)
+	if err != nil {
+		t.Fatal(err)
+	}
+	p.hypotheses[1].model = failing{p.hypotheses[1].model}
+	w, posteriors, err := p.Weigh(context.Background(), Options{Workers: 1})
+	if err == nil || !strings.Contains(err.Error(), "broken") {
+		t.Errorf("error %v, want one that names the hypothesis", err)
+	}
+	if w == nil || len(w.Hypotheses) != 1 || len(posteriors) != 1 || !w.Partial {
+		t.Errorf("the first hypothesis is lost: %+v", w)
+	}
+}
+
+// failing is a model that cannot be computed.
+type failing struct{ models.Model }
+
+func (f failing) Clone() models.Model { return f }
+
+func (failing) Fill([]float64, *models.Polarizations) error { return errors.New("no such remnant") }
