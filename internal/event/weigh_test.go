@@ -12,7 +12,6 @@ import (
 	"knell/models"
 )
 
-
 // brief is tiny with noise and so few calls that the runs end at that limit: for
 // tests of what happens around the sampling.
 var brief = strings.NewReplacer("quiet = true", "quiet = false", "max_calls      = 0", "max_calls = 1500").Replace(tiny)
