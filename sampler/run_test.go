@@ -162,8 +162,8 @@ func TestEvidenceErrorIsReached(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if o.Runs != 2 || len(o.Warnings) != 1 || !strings.Contains(o.Warnings[0], "MaxRuns") {
-		t.Errorf("%d runs, warnings %q, want 2 and one about MaxRuns", o.Runs, o.Warnings)
+	if o.Runs != 2 || len(o.Warnings) != 1 || !strings.Contains(o.Warnings[0], "more live points") {
+		t.Errorf("%d runs, warnings %q, want 2 and one that asks for more live points", o.Runs, o.Warnings)
 	}
 }
 
