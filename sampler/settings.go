@@ -55,7 +55,7 @@ type Settings struct {
 
 	// SliceSteps is the least number of slice-sampling steps that separate a
 	// new point from the live point it starts from, where slices are used; up
-	// to twice as many are taken where walkers are seen to stay near their
+	// to three times as many are taken where walkers are seen to stay near their
 	// start. Default 4 times the dimension. More is fairer.
 	SliceSteps int
 

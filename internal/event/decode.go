@@ -20,7 +20,7 @@ const (
 	DefaultLength        = 32.0 // s
 	DefaultLivePoints    = 1000
 	DefaultEvidenceError = 0.15
-	DefaultRemaining     = 0.001 // nat
+	DefaultRemaining     = 0.01 // nat
 )
 
 // ReadConfig reads and checks the event file at path.
