@@ -102,6 +102,11 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 // every evidence ratio.
 func cautions(w *report.Weighing) []string {
 	var list []string
+	for _, h := range w.Hypotheses {
+		if h.Partial {
+			list = append(list, fmt.Sprintf("%s did not finish: its evidence, and every ratio with it, would still change by more than the error", h.Name))
+		}
+	}
 	for _, r := range w.Ratios {
 		if math.Abs(float64(r.LogBayesFactor)) < 3*float64(r.Error) {
 			list = append(list, fmt.Sprintf("the sign of ln B for %s over %s is within three standard errors of zero: ask for a smaller evidence_error before quoting it", r.For, r.Against))
