@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"runtime"
 	"time"
 
 	"knell/internal/random"
@@ -34,6 +35,7 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 	c := p.Config
 	w := &report.Weighing{
 		Event: c.Title, Seed: c.Seed, Version: o.Version,
+		GoVersion: runtime.Version(), Platform: runtime.GOOS + "/" + runtime.GOARCH,
 		LogEvidenceNoise: report.Number(p.likelihood.LogNoise()),
 		Analysis:         p.analysis(),
 		Sites:            p.sites,

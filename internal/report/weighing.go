@@ -13,6 +13,10 @@ type Weighing struct {
 	Event   string `json:"event"`
 	Seed    uint64 `json:"seed"`
 	Version string `json:"version"`
+	// GoVersion and Platform are what the program was built with and for: bits
+	// are promised for equal ones.
+	GoVersion string `json:"go_version"`
+	Platform  string `json:"platform"`
 	// Partial says that the run was interrupted and its numbers are not final.
 	Partial bool `json:"partial"`
 	// LogEvidenceNoise is the log-likelihood of noise alone.
