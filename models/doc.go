@@ -19,6 +19,9 @@
 // spins do not precess. ringing.go turns that into the transform, and is the
 // only place that does.
 //
+// A signal begins with a jump, or, for a likelihood that marginalises over what
+// comes before the start, with a smooth rise that ends there (lead.go).
+//
 // A Model holds scratch space and belongs to one goroutine; Clone gives the
 // next goroutine its own. Nothing here knows of data, priors or sampling.
 package models
