@@ -56,6 +56,15 @@ func (d *decoder) assign(h *Hypothesis, t *table, c *Config, shared, own map[str
 			d.fail("prior."+p.Name, "nothing", fmt.Sprintf("a prior for %s (%s), which hypothesis %q needs", p.Name, p.Note, h.Name))
 			return
 		}
+		if p.Name == "start_time" {
+			// Earlier, the signal would wrap around to the segment's end.
+			a := c.Analysis
+			first, last := a.Start-a.Gate, a.Start+a.Duration-a.Gate
+			if low, high := prior.Prior.Support(); low < first || high > last {
+				d.fail(prior.Key, fmt.Sprintf("%v", prior.Prior), fmt.Sprintf("a range within the analysed segment, %g to %g s after the event time", first, last))
+				return
+			}
+		}
 		h.Priors[p.Name] = prior
 	}
 	for _, name := range sortedKeys(own) {

@@ -252,6 +252,7 @@ func TestDecodeErrors(t *testing.T) {
 		{"low above high", "low = 40.0", "low = 140.0", "140.0", "prior.mass.low", "140", "less than high = 110"},
 		{"unknown kind", `kind = "uniform", low = 40.0`, `kind = "flat", low = 40.0`, "flat", "prior.mass.kind", `"flat"`, "uniform"},
 		{"spin beyond the model", "high = 0.98", "high = 1.2", "high = 1.2", "prior.spin", "uniform on [0, 1.2]", "0 to 0.998"},
+		{"start before the segment", "[prior]", "[prior]\nstart_time = { kind = \"fixed\", value = -0.5 }", "start_time", "prior.start_time", "-0.5", "segment"},
 		{"mass below zero", "low = 40.0", "low = -40.0", "-40.0", "prior.mass", "uniform on [-40, 110]", "mass of the model ringdown"},
 		{"injected spin beyond the model", "spin = 0.69", "spin = 1.69", "1.69", "injection.values.spin", "1.69", "0 to 0.998"},
 		{"injected model", "[injection]\nmodel  = \"ringdown\"", "[injection]\nmodel = \"ring\"", `"ring"`, "injection.model", `"ring"`, "ringdown"},

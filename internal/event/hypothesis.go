@@ -31,10 +31,10 @@ type bend struct {
 // parameters are.
 func newHypothesis(h Hypothesis, c *Config, g *likelihood.Gaussian) (*hypothesis, error) {
 	settings := modelSettings(h, c)
-	// A signal that is known to begin in the gate may rise in there. One whose
-	// start is free may begin after it, where a rise would be seen.
+	// A signal that is known to begin in the gate may rise in what of the gate lies
+	// before. One whose start is free may begin after it, where a rise would be seen.
 	if low, high := h.Priors["start_time"].Prior.Support(); low == high && high <= c.Analysis.Start {
-		settings.Lead = c.Analysis.Gate
+		settings.Lead = c.Analysis.Gate - (c.Analysis.Start - high)
 	}
 	model, err := models.New(settings)
 	if err != nil {
