@@ -122,7 +122,7 @@ func newCavity(s Settings) (Model, error) {
 
 // prepared gives c scratch space of its own.
 func (c *Cavity) prepared() (*Cavity, error) {
-	barrier, err := kerr.NewBarrier(c.parity)
+	barrier, err := kerr.NewBarrier(2, 2, c.parity)
 	if err != nil {
 		return nil, err
 	}

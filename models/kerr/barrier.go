@@ -43,11 +43,15 @@ type Barrier struct {
 // one between any two.
 const nodes = 2*tablePoints - 1
 
-// NewBarrier returns a Barrier of a parity. The first call of a parity decodes
-// its table, which takes some milliseconds.
-func NewBarrier(parity Parity) (*Barrier, error) {
+// NewBarrier returns the Barrier of (l, m) and a parity. The first call of a
+// parity decodes its table, which takes some milliseconds. An (l, m) without a
+// table is an error.
+func NewBarrier(l, m int, parity Parity) (*Barrier, error) {
 	if err := parity.check(); err != nil {
 		return nil, err
+	}
+	if l != 2 || m != 2 {
+		return nil, fmt.Errorf("kerr: barrier (%d,%d), want (2,2)", l, m)
 	}
 	load := oddTable
 	if parity == Even {

@@ -166,7 +166,7 @@ func TestReflectionDoesNotRemember(t *testing.T) {
 }
 
 func TestNewBarrierRange(t *testing.T) {
-	if _, err := NewBarrier(3); err == nil {
+	if _, err := NewBarrier(2, 2, 3); err == nil {
 		t.Error("parity 3: no error")
 	}
 	var re, im [1]float64
@@ -221,7 +221,7 @@ func FuzzDecodeTable(f *testing.F) {
 
 func newBarrier(t testing.TB, parity Parity) *Barrier {
 	t.Helper()
-	b, err := NewBarrier(parity)
+	b, err := NewBarrier(2, 2, parity)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -229,7 +229,7 @@ func newBarrier(t testing.TB, parity Parity) *Barrier {
 }
 
 func BenchmarkSetSpin(b *testing.B) {
-	barrier, err := NewBarrier(Odd)
+	barrier, err := NewBarrier(2, 2, Odd)
 	if err != nil {
 		b.Fatal(err)
 	}
@@ -247,7 +247,7 @@ func BenchmarkSetSpin(b *testing.B) {
 // BenchmarkReflection walks a band like that of a likelihood: 3,500 bins, most of
 // them inside the reach.
 func BenchmarkReflection(b *testing.B) {
-	barrier, err := NewBarrier(Odd)
+	barrier, err := NewBarrier(2, 2, Odd)
 	if err != nil {
 		b.Fatal(err)
 	}

@@ -47,7 +47,7 @@ func tabulate(parity kerr.Parity) error {
 
 // compare prints the largest error of the table by range of spin.
 func compare(parity kerr.Parity) error {
-	barrier, err := kerr.NewBarrier(parity)
+	barrier, err := kerr.NewBarrier(2, 2, parity)
 	if err != nil {
 		return err
 	}
