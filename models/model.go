@@ -84,6 +84,14 @@ type Settings struct {
 	Modes        []string // "l,m,n", e.g. "2,2,0"
 	Reflectivity string   // cavity only: one of ReflectivityNames()
 	Parity       string   // cavity only: "odd" (the default) or "even"
+	// Excitation says what sets the cavity ringing: "barrier" (the default),
+	// "source" or "infall"; cavity only.
+	Excitation string
+	// Angular chooses the angular factors: "spheroidal" (the default) or
+	// "spherical".
+	Angular string
+	// Count of wave packets; burst only.
+	Count int
 	Grid         Grid
 	// Inclination of the remnant's spin to the line of sight, rad.
 	Inclination float64
