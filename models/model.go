@@ -92,7 +92,7 @@ type Settings struct {
 	Angular string
 	// Count of wave packets; burst only.
 	Count int
-	Grid         Grid
+	Grid  Grid
 	// Inclination of the remnant's spin to the line of sight, rad.
 	Inclination float64
 	// Start is the analysis start in seconds after the event time: the origin
