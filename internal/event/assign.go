@@ -76,12 +76,10 @@ func (d *decoder) assign(h *Hypothesis, t *table, c *Config, shared, own map[str
 }
 
 // familyOf is the key that stands for every parameter of a kind: a prior on
-// "amplitude" serves each amplitude_LMN.
+// "amplitude" serves each amplitude_LMN, one on "time" each time_N.
 func familyOf(name string) string {
-	for _, family := range []string{"amplitude", "phase"} {
-		if strings.HasPrefix(name, family+"_") {
-			return family
-		}
+	if i := strings.LastIndexByte(name, '_'); i > 0 && strings.Trim(name[i+1:], "0123456789m") == "" {
+		return name[:i]
 	}
 	return name
 }
@@ -107,8 +105,7 @@ func names(list []models.Parameter) string {
 // modelSettings is a hypothesis's model for the event's data.
 func modelSettings(h Hypothesis, c *Config) models.Settings {
 	a := c.Analysis
-	return models.Settings{
-		Model: h.Model, Modes: h.Modes, Reflectivity: h.Reflectivity, Parity: h.Parity,
-		Grid: a.grid(), Inclination: c.Event.Inclination, Start: a.Start, Length: a.Duration - a.Gate,
-	}
+	s := h.settings()
+	s.Grid, s.Inclination, s.Start, s.Length = a.grid(), c.Event.Inclination, a.Start, a.Duration-a.Gate
+	return s
 }

@@ -71,9 +71,8 @@ type Noise struct {
 
 // Injection is a known signal added to the strain of every site.
 type Injection struct {
-	Model, Reflectivity, Parity string
-	Modes                       []string
-	Values                      map[string]float64
+	Signal
+	Values map[string]float64
 }
 
 // Analysis says what part of the strain is compared.
@@ -95,10 +94,20 @@ type Sampler struct {
 
 // Hypothesis is a named model with its priors.
 type Hypothesis struct {
-	Name, Model          string
+	Name string
+	Signal
+	// Stable excludes parameters at which the cavity is unstable.
+	Stable bool
+	Priors map[string]NamedPrior
+}
+
+// Signal is a model and its settings, as models.Settings has them.
+type Signal struct {
+	Model                string
 	Modes                []string
 	Reflectivity, Parity string
-	Priors               map[string]NamedPrior
+	Excitation, Angular  string
+	Count                int
 }
 
 // NamedPrior is a prior with the key it was read from.

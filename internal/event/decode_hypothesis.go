@@ -3,6 +3,7 @@ package event
 import (
 	"errors"
 	"fmt"
+	"math"
 	"regexp"
 	"strings"
 
@@ -12,16 +13,38 @@ import (
 
 func (d *decoder) injection(t *table) *Injection {
 	in := &Injection{Values: map[string]float64{}}
-	in.Model = t.choiceOr("model", "", models.Names())
-	in.Modes = t.texts("modes", `a list of modes, e.g. ["2,2,0"]`)
-	in.Reflectivity = t.textOr("reflectivity", "", "one of "+strings.Join(models.ReflectivityNames(), ", "))
-	in.Parity = t.textOr("parity", "", `"odd" or "even"`)
+	in.Signal = d.signal(t)
 	values := t.sub("values", "a table of numbers by parameter")
 	for _, name := range sortedKeys(values.values) {
 		in.Values[name] = values.number(name, "a number", nil)
 	}
 	t.finish()
 	return in
+}
+
+// signal reads what names a model; models.Describe judges whether it fits.
+func (d *decoder) signal(t *table) Signal {
+	s := Signal{Model: t.choiceOr("model", "", models.Names())}
+	const wantModes = `a list of modes, e.g. ["2,2,0"]`
+	if t.has("modes") {
+		s.Modes = t.texts("modes", wantModes)
+	} else {
+		t.known = append(t.known, "modes")
+	}
+	s.Reflectivity = t.textOr("reflectivity", "", "one of "+strings.Join(models.ReflectivityNames(), ", "))
+	s.Parity = t.textOr("parity", "", `"odd" or "even"`)
+	s.Excitation = t.textOr("excitation", "", `"barrier", "source" or "infall"`)
+	s.Angular = t.textOr("angular", "", `"spheroidal" or "spherical"`)
+	s.Count = int(t.integerOr("count", 0, "a whole number of wave packets above zero", func(n int64) bool { return n > 0 && n < math.MaxInt32 }))
+	return s
+}
+
+// settings is the signal as package models takes it.
+func (s Signal) settings() models.Settings {
+	return models.Settings{
+		Model: s.Model, Modes: s.Modes, Reflectivity: s.Reflectivity, Parity: s.Parity,
+		Excitation: s.Excitation, Angular: s.Angular, Count: s.Count,
+	}
 }
 
 // checkInjection compares the injection's values with its model's parameters.
@@ -64,10 +87,8 @@ func (d *decoder) hypothesis(t *table, c *Config, shared map[string]NamedPrior, 
 			t.fail("name", "each hypothesis under its own name, whatever its capitals")
 		}
 	}
-	h.Model = t.choiceOr("model", "", models.Names())
-	h.Modes = t.texts("modes", `a list of modes, e.g. ["2,2,0"]`)
-	h.Reflectivity = t.textOr("reflectivity", "", "one of "+strings.Join(models.ReflectivityNames(), ", "))
-	h.Parity = t.textOr("parity", "", `"odd" or "even"`)
+	h.Signal = d.signal(t)
+	h.Stable = t.flagOr("stable", false)
 	own := map[string]NamedPrior{}
 	if t.has("prior") {
 		own = d.priors(t.sub("prior", wantTable))

@@ -19,6 +19,7 @@ type hypothesis struct {
 	periodic   []bool // by coordinate of the unit cube
 	bends      []bend
 	centre     []float64 // the prior's middle, for the bends
+	allowed    allowed
 }
 
 // bend is a parameter that the sampler sees in a straight coordinate.
@@ -60,6 +61,9 @@ func newHypothesis(h Hypothesis, c *Config, g *likelihood.Gaussian) (*hypothesis
 		}
 	}
 	out.straighten()
+	if err := out.restrict(c); err != nil {
+		return nil, err
+	}
 	return out, nil
 }
 
@@ -112,10 +116,11 @@ func isFullCircle(p priors.Prior, of models.Parameter) bool {
 // target is a hypothesis as the sampler sees it, for one goroutine.
 type target struct {
 	*hypothesis
-	model  models.Model // its own clone
-	worker *likelihood.Worker
-	theta  []float64
-	h      *models.Polarizations
+	model   models.Model // its own clone
+	stabler stabler      // the same, if it can be unstable
+	worker  *likelihood.Worker
+	theta   []float64
+	h       *models.Polarizations
 }
 
 var _ sampler.Target = (*target)(nil)
@@ -123,13 +128,15 @@ var _ sampler.Target = (*target)(nil)
 func (h *hypothesis) newTarget() (sampler.Target, error) { return h.target(), nil }
 
 func (h *hypothesis) target() *target {
-	return &target{
+	t := &target{
 		hypothesis: h,
 		model:      h.model.Clone(),
 		worker:     h.likelihood.Worker(),
 		theta:      make([]float64, len(h.model.Parameters())),
 		h:          models.NewPolarizations(h.likelihood.Grid().Count),
 	}
+	t.stabler, _ = t.model.(stabler)
+	return t
 }
 
 // Dim implements sampler.Target.
@@ -142,6 +149,11 @@ func (t *target) LogLikelihood(u []float64) (float64, error) {
 }
 
 func (t *target) at(theta []float64) (float64, error) {
+	if t.Hypothesis.Stable {
+		if stable, err := t.stabler.Stable(theta); err != nil || !stable {
+			return math.Inf(-1), err
+		}
+	}
 	if err := t.model.Fill(theta, t.h); err != nil {
 		return 0, err
 	}

@@ -21,9 +21,9 @@ func (p *Prepared) summarise(h *hypothesis, o *sampler.Outcome) (report.Hypothes
 	}
 	entry := report.Hypothesis{
 		Name: h.Name, Model: h.Model, Dimensions: h.set.Dim(),
-		LogEvidence:      report.Number(o.LogEvidence + p.likelihood.LogNoise()),
-		LogEvidenceError: report.Number(o.LogEvidenceError),
-		LogEvidenceOver:  report.Number(o.LogEvidence),
+		LogEvidence:      report.Number(o.LogEvidence - h.allowed.logMass() + p.likelihood.LogNoise()),
+		LogEvidenceError: report.Number(math.Hypot(o.LogEvidenceError, h.allowed.error)),
+		LogEvidenceOver:  report.Number(o.LogEvidence - h.allowed.logMass()),
 		Calls:            o.Calls, LivePoints: o.LivePoints,
 		Information:      report.Number(o.Information),
 		EffectiveSamples: report.Number(o.EffectiveSamples),
@@ -53,6 +53,12 @@ func (p *Prepared) summarise(h *hypothesis, o *sampler.Outcome) (report.Hypothes
 	for i, l := range o.LogWeight {
 		weights[i] = math.Exp(l)
 	}
+	unstable, err := h.unstable(o.Points, weights)
+	if err != nil {
+		return entry, report.Posterior{}, err
+	}
+	entry.StablePrior = report.Number(h.allowed.mass)
+	entry.UnstablePosterior = report.Number(unstable)
 	for j, c := range columns {
 		q := weightedQuantiles(weighted[j], weights, 0.05, 0.5, 0.95)
 		entry.Summary = append(entry.Summary, report.ParameterSummary{

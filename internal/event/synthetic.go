@@ -151,9 +151,7 @@ func (p *Prepared) inject(series *strain.Series, plus, cross, delay float64) err
 // injectionSettings is the injection's model without its grid; its t = 0 is the
 // event's time.
 func (c *Config) injectionSettings() models.Settings {
-	in := c.Injection
-	return models.Settings{
-		Model: in.Model, Modes: in.Modes, Reflectivity: in.Reflectivity, Parity: in.Parity,
-		Inclination: c.Event.Inclination,
-	}
+	s := c.Injection.settings()
+	s.Inclination = c.Event.Inclination
+	return s
 }

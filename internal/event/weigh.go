@@ -109,6 +109,11 @@ func cautions(w *report.Weighing) []string {
 			list = append(list, fmt.Sprintf("%s did not finish: its evidence, and every ratio with it, would still change by more than the error", h.Name))
 		}
 	}
+	for _, h := range w.Hypotheses {
+		if h.UnstablePosterior > 0.01 {
+			list = append(list, fmt.Sprintf("%.0f %% of the posterior of %s lies where its echoes would grow without end (see growth_time): with stable = true in the hypothesis such points are excluded from its prior", 100*float64(h.UnstablePosterior), h.Name))
+		}
+	}
 	for _, r := range w.Ratios {
 		if math.Abs(float64(r.LogBayesFactor)) < 3*float64(r.Error) {
 			list = append(list, fmt.Sprintf("the sign of ln B for %s over %s is within three standard errors of zero: ask for a smaller evidence_error before quoting it", r.For, r.Against))

@@ -35,25 +35,31 @@ type Weighing struct {
 
 // Hypothesis is what the run found of one hypothesis.
 type Hypothesis struct {
-	Name             string             `json:"name"`
-	Model            string             `json:"model"`
-	LogEvidence      Number             `json:"log_evidence"`
-	LogEvidenceError Number             `json:"log_evidence_error"`
-	LogEvidenceOver  Number             `json:"log_evidence_over_noise"`
-	Calls            int64              `json:"calls"` // likelihood calls
-	Seconds          Number             `json:"seconds"`
-	Verdict          string             `json:"verdict"`   // whether the number can be trusted, in a few words
-	Posterior        string             `json:"posterior"` // name of the CSV file beside evidence.json
-	Dimensions       int                `json:"dimensions"`
-	LivePoints       int                `json:"live_points"`
-	Information      Number             `json:"information"` // nat
-	EffectiveSamples Number             `json:"effective_samples"`
-	InsertionRankP   Number             `json:"insertion_rank_p"`
-	Status           string             `json:"status"` // why the run stopped
-	Partial          bool               `json:"partial"`
-	MaxLogLikelihood Number             `json:"max_log_likelihood_over_noise"`
-	Warnings         []string           `json:"warnings"`
-	Summary          []ParameterSummary `json:"summary"`
+	Name             string   `json:"name"`
+	Model            string   `json:"model"`
+	LogEvidence      Number   `json:"log_evidence"`
+	LogEvidenceError Number   `json:"log_evidence_error"`
+	LogEvidenceOver  Number   `json:"log_evidence_over_noise"`
+	Calls            int64    `json:"calls"` // likelihood calls
+	Seconds          Number   `json:"seconds"`
+	Verdict          string   `json:"verdict"`   // whether the number can be trusted, in a few words
+	Posterior        string   `json:"posterior"` // name of the CSV file beside evidence.json
+	Dimensions       int      `json:"dimensions"`
+	LivePoints       int      `json:"live_points"`
+	Information      Number   `json:"information"` // nat
+	EffectiveSamples Number   `json:"effective_samples"`
+	InsertionRankP   Number   `json:"insertion_rank_p"`
+	Status           string   `json:"status"` // why the run stopped
+	Partial          bool     `json:"partial"`
+	MaxLogLikelihood Number   `json:"max_log_likelihood_over_noise"`
+	Warnings         []string `json:"warnings"`
+	// StablePrior is the share of the prior that the switch "stable" left, 1
+	// without it; the evidence is that of the prior normalised over this share.
+	StablePrior Number `json:"stable_prior"`
+	// UnstablePosterior is the posterior probability of points at which echoes
+	// grow.
+	UnstablePosterior Number             `json:"unstable_posterior"`
+	Summary           []ParameterSummary `json:"summary"`
 }
 
 // ParameterSummary is the median of one posterior column and the ends of its
