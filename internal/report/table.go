@@ -123,6 +123,9 @@ func writeParameters(out io.Writer, w *Weighing) error {
 
 // interval shows a median and its interval to a hundredth of the interval's width.
 func interval(s ParameterSummary) string {
+	if math.IsInf(float64(s.High90), 1) {
+		return fmt.Sprintf("%s [%s, %s]", orNever(s.Median), orNever(s.Low90), orNever(s.High90))
+	}
 	width := float64(s.High90 - s.Low90)
 	largest := max(math.Abs(float64(s.Low90)), math.Abs(float64(s.High90)))
 	places := 2 - int(math.Floor(math.Log10(width)))
@@ -134,6 +137,14 @@ func interval(s ParameterSummary) string {
 	}
 	places = max(places, 0)
 	return fmt.Sprintf("%.*f [%.*f, %.*f]", places, float64(s.Median), places, float64(s.Low90), places, float64(s.High90))
+}
+
+// orNever shows a time that may be infinite: that of something that never happens.
+func orNever(x Number) string {
+	if math.IsInf(float64(x), 1) {
+		return "never"
+	}
+	return fmt.Sprintf("%.3g", float64(x))
 }
 
 func writeCautions(out io.Writer, w *Weighing) error {

@@ -113,3 +113,19 @@ func TestModes(t *testing.T) {
 	}
 	golden(t, "modes.txt", out.Bytes())
 }
+
+// A growth time that is infinite is that of a cavity that is stable.
+func TestIntervalOfATimeThatNeverComes(t *testing.T) {
+	inf := Number(math.Inf(1))
+	for _, tc := range []struct {
+		s    ParameterSummary
+		want string
+	}{
+		{ParameterSummary{Low90: inf, Median: inf, High90: inf}, "never [never, never]"},
+		{ParameterSummary{Low90: 0.25, Median: 2, High90: inf}, "2 [0.25, never]"},
+	} {
+		if got := interval(tc.s); got != tc.want {
+			t.Errorf("%v: %q, want %q", tc.s, got, tc.want)
+		}
+	}
+}
