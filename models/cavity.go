@@ -66,6 +66,9 @@ func describeCavity(s Settings) ([]Parameter, error) {
 	if _, err := parseParity(s.Parity); err != nil {
 		return nil, err
 	}
+	if _, err := checkAngular(s.Angular); err != nil {
+		return nil, err
+	}
 	labels, err := parseModes(s.Modes)
 	if err != nil {
 		return nil, err
@@ -108,7 +111,7 @@ func newCavity(s Settings) (Model, error) {
 	if err != nil {
 		return nil, err
 	}
-	ringing, err := newRinging(s.Modes, s.Inclination)
+	ringing, err := newRinging(s.Modes, s.Inclination, s.Angular)
 	if err != nil {
 		return nil, err
 	}

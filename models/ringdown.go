@@ -24,6 +24,12 @@ func describeRingdown(s Settings) ([]Parameter, error) {
 	if s.Parity != "" {
 		return nil, &SettingError{"parity", strconv.Quote(s.Parity), "no such key: a ringdown has no cavity"}
 	}
+	if s.Excitation != "" {
+		return nil, &SettingError{"excitation", strconv.Quote(s.Excitation), "no such key: a ringdown has no cavity"}
+	}
+	if _, err := checkAngular(s.Angular); err != nil {
+		return nil, err
+	}
 	labels, err := parseModes(s.Modes)
 	if err != nil {
 		return nil, err
@@ -36,7 +42,7 @@ func newRingdown(s Settings) (Model, error) {
 	if err != nil {
 		return nil, err
 	}
-	ringing, err := newRinging(s.Modes, s.Inclination)
+	ringing, err := newRinging(s.Modes, s.Inclination, s.Angular)
 	if err != nil {
 		return nil, err
 	}

@@ -30,7 +30,13 @@ import (
 type ringing struct {
 	labels []modeLabel
 	tracks []*kerr.ModeTrack
+	// spherical holds each mode's angular factors where they are those of the
+	// sphere; nil means spheroidal ones, which the tracks hold.
+	spherical []angularFactors
 }
+
+// angularFactors are S at the inclination and at pi minus it.
+type angularFactors struct{ north, south complex128 }
 
 // modeLabel is a mode's "l,m,n" and the name its parameters carry.
 type modeLabel struct {
@@ -64,9 +70,27 @@ func parseModes(modes []string) ([]modeLabel, error) {
 	return labels, nil
 }
 
-// newRinging tabulates the modes over spin at one inclination.
-func newRinging(modes []string, inclination float64) (*ringing, error) {
+// checkAngular checks Settings.Angular and says whether it asks for spherical
+// factors.
+func checkAngular(name string) (spherical bool, err error) {
+	switch name {
+	case "", "spheroidal":
+		return false, nil
+	case "spherical":
+		return true, nil
+	}
+	return false, &SettingError{"angular", strconv.Quote(name), `"spheroidal" or "spherical"`}
+}
+
+// newRinging tabulates the modes over spin at one inclination. Spheroidal factors
+// belong to each mode's a omega; spherical ones are those of a omega = 0, which
+// some published templates use.
+func newRinging(modes []string, inclination float64, angular string) (*ringing, error) {
 	labels, err := parseModes(modes)
+	if err != nil {
+		return nil, err
+	}
+	spherical, err := checkAngular(angular)
 	if err != nil {
 		return nil, err
 	}
@@ -77,6 +101,18 @@ func newRinging(modes []string, inclination float64) (*ringing, error) {
 			return nil, fmt.Errorf("models: mode %s: %w", label.name, err)
 		}
 		r.tracks = append(r.tracks, track)
+		if !spherical {
+			continue
+		}
+		north, err := kerr.Spheroidal(label.l, label.m, 0, inclination)
+		if err != nil {
+			return nil, fmt.Errorf("models: mode %s: %w", label.name, err)
+		}
+		south, err := kerr.Spheroidal(label.l, label.m, 0, math.Pi-inclination)
+		if err != nil {
+			return nil, fmt.Errorf("models: mode %s: %w", label.name, err)
+		}
+		r.spherical = append(r.spherical, angularFactors{north, south})
 	}
 	return r, nil
 }
@@ -144,6 +180,9 @@ func (r *ringing) wave(i int, mass, spin, amplitude, phase float64) (wave, error
 	omega, north, south, err := r.tracks[i].At(spin)
 	if err != nil {
 		return wave{}, err
+	}
+	if r.spherical != nil {
+		north, south = r.spherical[i].north, r.spherical[i].south
 	}
 	scale := mass * constants.SolarMassSeconds
 	sin, cos := math.Sincos(phase)

@@ -162,6 +162,9 @@ func TestSettingsAreChecked(t *testing.T) {
 		{Settings{Model: "ringdown", Modes: []string{"9,2,0"}}, "modes"},
 		{Settings{Model: "ringdown", Modes: []string{"2,2,0", "2, 2, 0"}}, "modes"},
 		{Settings{Model: "ringdown", Modes: []string{"2,2,0"}, Reflectivity: "constant"}, "reflectivity"},
+		{Settings{Model: "ringdown", Modes: []string{"2,2,0"}, Excitation: "barrier"}, "excitation"},
+		{Settings{Model: "ringdown", Modes: []string{"2,2,0"}, Angular: "flat"}, "angular"},
+		{Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "constant", Angular: "flat"}, "angular"},
 		{Settings{Model: "cavity", Modes: []string{"2,2,0"}}, "reflectivity"},
 		{Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "mirror"}, "reflectivity"},
 		{Settings{Model: "cavity", Modes: []string{"3,3,0"}, Reflectivity: "constant"}, "modes"},
@@ -209,4 +212,39 @@ func TestFillExponential(t *testing.T) {
 func ExampleParseMode() {
 	fmt.Println(ParseMode("2,-2,1"))
 	// Output: 2 -2 1 <nil>
+}
+
+// Spherical factors are -2Y_lm(iota, 0) whatever the spin.
+func TestSphericalFactors(t *testing.T) {
+	// -2Y_22 and -2Y_21 as printed in arXiv:0709.0093, eqs. II.9-II.13.
+	for _, tc := range []struct {
+		mode string
+		y    func(iota float64) float64
+	}{
+		{"2,2,0", func(i float64) float64 { return math.Sqrt(5/(64*math.Pi)) * math.Pow(1+math.Cos(i), 2) }},
+		{"2,1,0", func(i float64) float64 {
+			return math.Sqrt(5/(16*math.Pi)) * math.Sin(i) * (1 + math.Cos(i))
+		}},
+		{"2,-2,0", func(i float64) float64 { return math.Sqrt(5/(64*math.Pi)) * math.Pow(1-math.Cos(i), 2) }},
+	} {
+		for _, spin := range []float64{0, 0.69, 0.95} {
+			const iota, amplitude, phase, mass = 0.8, 1e-21, 1.3, 68.0
+			r, err := newRinging([]string{tc.mode}, iota, "spherical")
+			if err != nil {
+				t.Fatal(err)
+			}
+			w, err := r.wave(0, mass, spin, amplitude, phase)
+			if err != nil {
+				t.Fatal(err)
+			}
+			c := cmplx.Rect(amplitude, phase)
+			north, south := complex(tc.y(iota), 0), complex(tc.y(math.Pi-iota), 0)
+			if d := cmplx.Abs(w.p - c*(north+south)); !(d <= 1e-14*amplitude) {
+				t.Errorf("%s at spin %g: p = %v, want %v", tc.mode, spin, w.p, c*(north+south))
+			}
+			if d := cmplx.Abs(w.x - 1i*c*(north-south)); !(d <= 1e-14*amplitude) {
+				t.Errorf("%s at spin %g: x = %v, want %v", tc.mode, spin, w.x, 1i*c*(north-south))
+			}
+		}
+	}
 }
