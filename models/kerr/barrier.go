@@ -4,6 +4,7 @@ import (
 	_ "embed"
 	"fmt"
 	"math"
+	"math/cmplx"
 	"sort"
 	"sync"
 )
@@ -32,6 +33,7 @@ const rotorRadius = 5.0
 type Barrier struct {
 	table     *table
 	low, high float64
+	spin      float64
 	blend     [4][tablePoints]float64 // real part, imaginary part, phase, ω
 	value     [nodes]complex128
 	node      [nodes]float64    // ω, growing
@@ -78,6 +80,7 @@ func (b *Barrier) SetSpin(spin float64) error {
 	stencil(at, weights[:])
 	b.mix(first, &weights)
 	b.place()
+	b.spin = spin
 
 	// The reach may bend between rows, so it is blended from two only.
 	i := min(int(x), tableCells-1)
@@ -154,15 +157,70 @@ func (b *Barrier) place() {
 // Reflection sets R to 0.
 func (b *Barrier) Reach() (low, high float64) { return b.low, b.high }
 
+// Range returns the Mω that the table covers.
+func (b *Barrier) Range() (low, high float64) { return -tableLimit, tableLimit }
+
+// check returns an error that names the range unless omega0 and last lie in it.
+func (b *Barrier) check(omega0, last float64) error {
+	for _, omega := range [...]float64{omega0, last} {
+		if !(math.Abs(omega) <= tableLimit*(1+1e-12)) {
+			return fmt.Errorf("kerr: Mω = %g, want %g to %g", omega, -tableLimit, tableLimit)
+		}
+	}
+	return nil
+}
+
+// Transmission is Reflection for the transmission T.
+func (b *Barrier) Transmission(omega0, domega float64, re, im []float64) error {
+	if len(re) != len(im) {
+		panic(fmt.Sprintf("kerr: Transmission: len(re) = %d, len(im) = %d, want equal", len(re), len(im)))
+	}
+	for j := range re {
+		omega := omega0 + float64(j)*domega
+		if err := b.check(omega, omega); err != nil {
+			return err
+		}
+		r, err := BarrierResponse(2, 2, b.spin, omega, Odd)
+		if err != nil {
+			return err
+		}
+		re[j], im[j] = real(r.Transmission), imag(r.Transmission)
+	}
+	return nil
+}
+
+// ReflectionAt returns R and dR/dω at a complex frequency near the real axis.
+func (b *Barrier) ReflectionAt(omega complex128) (r, slope complex128, err error) {
+	if err := b.check(real(omega), real(omega)); err != nil {
+		return 0, 0, err
+	}
+	if !(real(omega) >= b.low && real(omega) <= b.high) {
+		return 0, 0, nil
+	}
+	i := min(max(sort.SearchFloat64s(b.node[:], real(omega))-1, 0), nodes-2)
+	c := &b.cell[i]
+	x := omega - complex(b.node[i], 0)
+	c0, c1, c2, c3 := complex(c[0], c[1]), complex(c[2], c[3]), complex(c[4], c[5]), complex(c[6], c[7])
+	turn := cmplx.Exp(complex(0, 2*rotorRadius) * omega)
+	r = turn * (c0 + x*(c1+x*(c2+x*c3)))
+	return r, turn*(c1+x*(2*c2+3*x*c3)) + complex(0, 2*rotorRadius)*r, nil
+}
+
 // Reflection sets re[j] + i im[j] to R at Mω = omega0 + j domega, for every j of
 // re; domega may be negative or 0. R refers to BarrierResponse's definition; the
 // table's error is below 2e-7. It allocates nothing. Slices of different
-// length panic.
-func (b *Barrier) Reflection(omega0, domega float64, re, im []float64) {
+// length panic; a frequency outside Range is an error that names it.
+func (b *Barrier) Reflection(omega0, domega float64, re, im []float64) error {
 	if len(re) != len(im) {
 		panic(fmt.Sprintf("kerr: Reflection: len(re) = %d, len(im) = %d, want equal", len(re), len(im)))
 	}
 	n := len(re)
+	if n == 0 {
+		return nil
+	}
+	if err := b.check(omega0, omega0+float64(n-1)*domega); err != nil {
+		return err
+	}
 	// Walk towards growing ω: at is the index of the j-th point of the walk.
 	start, step, at, stride := omega0, domega, 0, 1
 	if domega < 0 {
@@ -203,4 +261,5 @@ func (b *Barrier) Reflection(omega0, domega float64, re, im []float64) {
 		re[at], im[at] = 0, 0
 		at += stride
 	}
+	return nil
 }

@@ -35,7 +35,7 @@ func TestBarrierAgainstDirect(t *testing.T) {
 				t.Fatal(err)
 			}
 			turn := tableM * HorizonFrequency(spin)
-			for _, omega := range []float64{1.8 * (2*rng.Float64() - 1), 0.5 * (2*rng.Float64() - 1), turn, 0, -0.3,
+			for _, omega := range []float64{1.7 * (2*rng.Float64() - 1), 0.5 * (2*rng.Float64() - 1), turn, 0, -0.3,
 				turn + 3*SurfaceGravity(spin)*(2*rng.Float64()-1)} {
 				var re, im [1]float64
 				barrier.Reflection(omega, 0, re[:], im[:])
@@ -69,6 +69,9 @@ func TestBarrierTable(t *testing.T) {
 			Even: complex(row["re_R_BH_even"], row["im_R_BH_even"]),
 		} {
 			barrier, omega := barriers[parity], row["omega"]
+			if omega > tableLimit {
+				continue
+			}
 			if row["m"] < 0 {
 				omega, want = -omega, cmplx.Conj(want)
 			}
@@ -100,19 +103,19 @@ func TestReflectionWalks(t *testing.T) {
 			t.Errorf("a=%g: reach %g to %g", spin, low, high)
 		}
 		const n = 2501
-		const step = 4.0 / (n - 1)
+		const step = 3.4 / (n - 1)
 		up, down := make([]complex128, n), make([]complex128, n)
 		re, im := make([]float64, n), make([]float64, n)
-		barrier.Reflection(-2, step, re, im)
+		barrier.Reflection(-1.7, step, re, im)
 		for j := range up {
 			up[j] = complex(re[j], im[j])
 		}
-		barrier.Reflection(2, -step, re, im)
+		barrier.Reflection(1.7, -step, re, im)
 		for j := range down {
 			down[n-1-j] = complex(re[j], im[j])
 		}
 		for j := range up {
-			omega := -2 + float64(j)*step
+			omega := -1.7 + float64(j)*step
 			barrier.Reflection(omega, 0, re[:1], im[:1])
 			single := complex(re[0], im[0])
 			// Rounding of ω and of the rotor over 2,500 steps.
@@ -127,9 +130,8 @@ func TestReflectionWalks(t *testing.T) {
 		if re[0] != re[1] && math.Abs(re[0]-re[n-1]) > 1e-14 {
 			t.Errorf("a=%g: a step of 0 gives different values %g and %g", spin, re[0], re[n-1])
 		}
-		barrier.Reflection(math.NaN(), 1, re, im)
-		if re[0] != 0 || im[0] != 0 {
-			t.Errorf("a=%g: R(NaN) = %g%+gi, want 0", spin, re[0], im[0])
+		if err := barrier.Reflection(math.NaN(), 1, re, im); err == nil {
+			t.Errorf("a=%g: no error for NaN", spin)
 		}
 		barrier.Reflection(0, 1, nil, nil)
 	}

@@ -63,7 +63,7 @@ func compare(parity kerr.Parity) error {
 			}
 			from, to := barrier.Reach()
 			for range 100 {
-				omega := -1.75 + 3.5*rng.Float64()
+				omega := -1.7 + 3.4*rng.Float64()
 				if rng.Float64() < 0.5 { // where R turns
 					omega = 2*kerr.HorizonFrequency(spin) + 0.2*(rng.Float64()-0.5)
 				}
