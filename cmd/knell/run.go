@@ -44,7 +44,7 @@ func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 		DisableSliceFlagSeparator: true,
 		Writer:                    stdout,
 		ErrWriter:                 stderr,
-		Commands:                  []*cli.Command{weighCommand(), checkCommand(), modesCommand()},
+		Commands:                  []*cli.Command{weighCommand(), checkCommand(), modesCommand(), barrierCommand()},
 		// Errors come back to this function; nothing below it exits.
 		ExitErrHandler: func(*cli.Context, error) {},
 		OnUsageError: func(c *cli.Context, err error, _ bool) error {
@@ -52,7 +52,11 @@ func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 		},
 		Action: func(c *cli.Context) error {
 			if c.Args().Present() {
-				return &usageError{fmt.Sprintf("no command %q, want one of weigh, check, modes; see knell --help", c.Args().First())}
+				names := make([]string, len(c.App.Commands))
+				for i, command := range c.App.Commands {
+					names[i] = command.Name
+				}
+				return &usageError{fmt.Sprintf("no command %q, want one of %s; see knell --help", c.Args().First(), strings.Join(names, ", "))}
 			}
 			return cli.ShowAppHelp(c)
 		},
