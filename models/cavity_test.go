@@ -69,7 +69,7 @@ func TestEchoSumTermByTerm(t *testing.T) {
 			if law == "boltzmann" {
 				theta = cavityTheta(0.6, 1.5)
 			}
-			reach, err := c.echoes(theta, 0)
+			reach, err := c.fillSums(&c.groups[0], c.place(theta, 0))
 			if err != nil {
 				t.Fatal(err)
 			}
