@@ -1,9 +1,12 @@
 package kerr
 
 import (
+	"fmt"
 	"math"
 	"math/cmplx"
 	"testing"
+
+	"knell/internal/checktable"
 )
 
 // TestBarrierResponseTable compares with amplitudes computed at 60 digits; see
@@ -40,6 +43,40 @@ func TestBarrierResponseTable(t *testing.T) {
 	}
 	t.Logf("largest difference: R %.1e, |R|² %.1e, T %.1e of itself", worstR, worstSquare, worstT)
 }
+
+// TestPhysicsFaintReflection compares with amplitudes computed at 60 digits,
+// R down to 3e-17, 1 - |R|² to 2e-56, by relative difference.
+func TestPhysicsFaintReflection(t *testing.T) {
+	const source = "testdata/faint.csv"
+	worst := struct{ r, t, grey, separation float64 }{-1, -1, -1, -1}
+	table := checktable.New(t, "barrier response against an independent 60-digit calculation")
+	for _, row := range readTable(t, "faint.csv") {
+		l, m, spin, omega := int(row["l"]), int(row["m"]), row["a"], row["omega"]
+		got, err := BarrierResponse(l, m, spin, omega, Odd)
+		if err != nil {
+			t.Error(err)
+			continue
+		}
+		wantR := complex(row["re_R_odd"], row["im_R_odd"])
+		errR, errT := offBy(got.Reflection, wantR), offBy(got.Transmission, complex(row["re_T"], row["im_T"]))
+		grey, sep := math.Abs(got.Greybody/row["greybody"]-1), math.Abs(got.Separation/row["A"]-1)
+		worst.r, worst.t = max(worst.r, errR), max(worst.t, errT)
+		worst.grey, worst.separation = max(worst.grey, grey), max(worst.separation, sep)
+		if errR > 1e-12 || errT > 1e-13 || grey > 1e-13 {
+			t.Errorf("(%d,%d) a=%g ω=%g: off by %.1e of R = %.12g, %.1e of T, %.1e of 1-|R|²", l, m, spin, omega, errR, wantR, errT, grey)
+		}
+		if omega > 2 {
+			table.Complex(fmt.Sprintf("R (%d,%d) spin %g Mω %g", l, m, spin, omega), got.Reflection, wantR, 1e-12, source)
+		}
+	}
+	table.Worst("R, relative", worst.r, 1e-12, source)
+	table.Worst("T, relative", worst.t, 1e-13, source)
+	table.Worst("1 - |R|², relative", worst.grey, 1e-13, source)
+	table.Worst("A, relative", worst.separation, 1e-14, source)
+}
+
+// offBy returns |got - want|/|want|.
+func offBy(got, want complex128) float64 { return cmplx.Abs(got-want) / cmplx.Abs(want) }
 
 // TestFluxIdentity checks |R|² + (ω/k)|T|² = 1, which ties two amplitudes
 // together that come out of the integration separately, over the whole range.
@@ -167,7 +204,7 @@ func TestBarrierResponseRange(t *testing.T) {
 		parity      Parity
 	}{
 		{1, 0, 0.5, 0.3, Odd}, {9, 0, 0.5, 0.3, Odd}, {2, 3, 0.5, 0.3, Odd}, {2, 2, 0.999, 0.3, Odd},
-		{2, 2, math.NaN(), 0.3, Odd}, {2, 2, 0.5, 2.1, Odd}, {2, 2, 0.5, math.NaN(), Odd}, {2, 2, 0.5, 0.3, 7},
+		{2, 2, math.NaN(), 0.3, Odd}, {2, 2, 0.5, 3.1, Odd}, {2, 2, 0.5, math.NaN(), Odd}, {2, 2, 0.5, 0.3, 7},
 	} {
 		if _, err := BarrierResponse(tc.l, tc.m, tc.spin, tc.omega, tc.parity); err == nil {
 			t.Errorf("%+v: no error", tc)
@@ -176,9 +213,20 @@ func TestBarrierResponseRange(t *testing.T) {
 }
 
 func BenchmarkBarrierResponse(b *testing.B) {
-	for b.Loop() {
-		if _, err := BarrierResponse(2, 2, 0.69, 0.4, Odd); err != nil {
-			b.Fatal(err)
-		}
+	for _, tc := range []struct {
+		name        string
+		m           int
+		spin, omega float64
+	}{
+		{"real axis", 2, 0.69, 0.4}, {"faint", 2, 0.69, 1.2}, {"edge of the domain", -2, MaxSpin, MaxFrequency}, {"slow wave", 2, 0.69, 0.001},
+	} {
+		b.Run(tc.name, func(b *testing.B) {
+			b.ReportAllocs()
+			for b.Loop() {
+				if _, err := BarrierResponse(2, tc.m, tc.spin, tc.omega, Odd); err != nil {
+					b.Fatal(err)
+				}
+			}
+		})
 	}
 }
