@@ -2,6 +2,8 @@ package models
 
 import (
 	"fmt"
+	"slices"
+	"strconv"
 	"strings"
 
 	"knell/models/kerr"
@@ -81,7 +83,7 @@ type Bender interface {
 // Settings says which model to build and for which data.
 type Settings struct {
 	Model        string   // one of Names()
-	Modes        []string // "l,m,n", e.g. "2,2,0"
+	Modes        []string // "l,m,n", e.g. "2,2,0"; not for burst, and optional for comb
 	Reflectivity string   // cavity only: one of ReflectivityNames()
 	Parity       string   // cavity only: "odd" (the default) or "even"
 	// Excitation says what sets the cavity ringing: "barrier" (the default),
@@ -90,7 +92,7 @@ type Settings struct {
 	// Angular chooses the angular factors: "spheroidal" (the default) or
 	// "spherical".
 	Angular string
-	// Count of wave packets; burst only.
+	// Count of wave packets, 1 to MaxPackets; burst only.
 	Count int
 	Grid  Grid
 	// Inclination of the remnant's spin to the line of sight, rad.
@@ -117,15 +119,40 @@ func (e *SettingError) Error() string {
 	return fmt.Sprintf("models: %s = %s, want %s", e.Key, e.Got, e.Want)
 }
 
-// constructors maps a model's name to what describes and what builds it. Adding
-// a model is adding its file and its line here.
+// constructors maps a model's name to the settings it has a use for, to what
+// describes it and to what builds it. Adding a model is adding its file and its
+// line here.
 var constructors = []struct {
 	name     string
+	settings []string
 	describe func(Settings) ([]Parameter, error)
 	build    func(Settings) (Model, error)
 }{
-	{"ringdown", describeRingdown, newRingdown},
-	{"cavity", describeCavity, newCavity},
+	{"ringdown", []string{"modes", "angular"}, describeRingdown, newRingdown},
+	{"cavity", []string{"modes", "reflectivity", "parity", "excitation", "angular"}, describeCavity, newCavity},
+	{"pulses", []string{"modes", "angular"}, describePulses, newPulses},
+	{"comb", []string{"modes", "angular"}, describeComb, newComb},
+	{"burst", []string{"count"}, describeBurst, newBurst},
+}
+
+// given lists the settings that are not left at their zero value and that not
+// every model has a use for.
+func (s Settings) given() []SettingError {
+	var list []SettingError
+	if len(s.Modes) > 0 {
+		list = append(list, SettingError{Key: "modes", Got: fmt.Sprintf("%q", s.Modes)})
+	}
+	for _, text := range []struct{ key, value string }{
+		{"reflectivity", s.Reflectivity}, {"parity", s.Parity}, {"excitation", s.Excitation}, {"angular", s.Angular},
+	} {
+		if text.value != "" {
+			list = append(list, SettingError{Key: text.key, Got: strconv.Quote(text.value)})
+		}
+	}
+	if s.Count != 0 {
+		list = append(list, SettingError{Key: "count", Got: strconv.Itoa(s.Count)})
+	}
+	return list
 }
 
 // Names lists the models New knows.
@@ -142,9 +169,16 @@ func Names() []string {
 // that a user got wrong gives a *SettingError.
 func Describe(s Settings) ([]Parameter, error) {
 	for _, c := range constructors {
-		if c.name == s.Model {
-			return c.describe(s)
+		if c.name != s.Model {
+			continue
 		}
+		for _, given := range s.given() {
+			if !slices.Contains(c.settings, given.Key) {
+				given.Want = "no such key: the model " + c.name + " takes " + strings.Join(c.settings, ", ")
+				return nil, &given
+			}
+		}
+		return c.describe(s)
 	}
 	return nil, &SettingError{"model", fmt.Sprintf("%q", s.Model), "one of " + strings.Join(Names(), ", ")}
 }
@@ -174,6 +208,17 @@ func remnantParameters(s Settings) []Parameter {
 	return []Parameter{
 		{Name: "mass", Unit: "solar masses", Note: "remnant mass in the detector frame", Low: 1e-3, High: 1e12},
 		{Name: "spin", Note: "remnant spin, dimensionless", Low: 0, High: kerr.MaxSpin},
-		{Name: "start_time", Unit: "s", Note: "where the ringdown begins, after the event time", Low: -maxStart, High: maxStart, Default: s.Start, HasDefault: true},
+		startParameter(s, "where the ringdown begins, after the event time"),
+	}
+}
+
+func startParameter(s Settings, note string) Parameter {
+	return Parameter{Name: "start_time", Unit: "s", Note: note, Low: -maxStart, High: maxStart, Default: s.Start, HasDefault: true}
+}
+
+// checkLength panics where a model that counts arrivals is given no data.
+func checkLength(s Settings) {
+	if !(s.Length > 0) {
+		panic(fmt.Sprintf("models: %g s of data after the analysis start", s.Length))
 	}
 }
