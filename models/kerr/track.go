@@ -8,120 +8,123 @@ import (
 
 // ModeTrack is one quasi-normal mode, seen at one polar angle, over the whole
 // range of spins: what a sampler needs, in some tens of nanoseconds. It never
-// changes after NewModeTrack, so any number of goroutines may read it.
+// changes after it is made, so any number of goroutines may read it.
 type ModeTrack struct {
-	points   [trackPieces][]trackPoint // equal pieces of u = artanh(spin), each at equal steps, both ends included
-	perPiece float64                   // pieces per unit of u
+	index  panelIndex
+	powers [][panelNodes]trackPoint // by panel: coefficients of the powers of its coordinate
 }
 
-type trackPoint struct{ omega, north, south complex128 }
+// trackPoint has the real and imaginary parts of ω and of the angular function at
+// θ and at π - θ.
+type trackPoint [trackFunctions]float64
 
-// A track interpolates through trackOrder points of a piece. The steps of a
-// piece are halved until every second point is reproduced by the others to
-// trackTolerance. Most pieces keep the first grid; where two overtones nearly
-// meet, a branch point close to real spins needs a much finer one.
 const (
-	trackPieces    = 64
-	trackOrder     = 6
-	trackTolerance = 5e-10
-	coarsestPiece  = 10 // steps
-	finestPiece    = coarsestPiece << 9
+	trackFunctions = 6
+	// trackTolerance bounds the last two Chebyshev coefficients of an angular
+	// function, relative to its size. Those of ω are the table's.
+	trackTolerance = 5e-12
 )
 
-// NewModeTrack follows mode (l, m, n) over the spins from 0 to MaxSpin and
-// tabulates its frequency and its angular function at polar angle theta (rad,
-// 0 to π) and at π - theta. Ranges of l, m and n as for QuasiNormalMode. It
-// takes about 20 ms for a mode that moves smoothly, up to 1 s for one that does
-// not.
+// NewModeTrack takes mode (l, m, n) over the spins from 0 to MaxSpin from the
+// embedded table and follows its spheroidal function (see Spheroidal; γ = aω) at
+// polar angle theta (rad, 0 to π) and at π - theta. Ranges of l, m and n as for
+// QuasiNormalMode. It takes some milliseconds.
 func NewModeTrack(l, m, n int, theta float64) (*ModeTrack, error) {
-	if err := checkMode(l, m, n); err != nil {
-		return nil, err
-	}
-	if !(theta >= 0 && theta <= math.Pi) {
-		return nil, fmt.Errorf("kerr: theta = %g rad, want 0 to π", theta)
-	}
-	f, err := newFollower(l, m, n)
+	curve, sphere, err := trackParts(l, m, n, theta)
 	if err != nil {
 		return nil, err
 	}
-	h, err := sphericalHarmonic(l, m)
-	if err != nil {
-		return nil, err
+	sample := func(h *harmonic, u []float64, values [][]float64) error {
+		for j, at := range u {
+			omega, _ := curve.at(at)
+			if err := h.follow(complex(math.Tanh(at), 0) * omega); err != nil {
+				return err
+			}
+			for f, v := range []complex128{omega, h.at(theta), h.at(math.Pi - theta)} {
+				values[2*f][j], values[2*f+1][j] = real(v), imag(v)
+			}
+		}
+		return nil
 	}
-	t := &ModeTrack{perPiece: trackPieces / math.Atanh(MaxSpin)}
-	for i := range t.points {
-		steps, off := coarsestPiece/2, math.Inf(1)
-		for off > trackTolerance {
-			if steps *= 2; steps > finestPiece {
-				return nil, fmt.Errorf("kerr: mode (%d,%d,%d): %d steps near spin %.4f interpolate to %.1e only", l, m, n, finestPiece, math.Tanh(float64(i)/t.perPiece), off)
+	small := func(c chebyshev) bool {
+		size := func(f, k int) float64 { return cmplx.Abs(complex(c[f][k], c[f+1][k])) }
+		// Along the axis all functions but those of m = ±2 vanish; the largest
+		// values of any are about 1.
+		scale := 1e-3 + size(2, 0) + size(4, 0)
+		for _, k := range []int{panelNodes - 2, panelNodes - 1} {
+			if max(size(2, k), size(4, k)) > trackTolerance*scale {
+				return false
 			}
-			// Each attempt starts from copies of the state at the piece's start.
-			follow, harmonic := *f, *h
-			points := make([]trackPoint, steps+1)
-			for j := range points {
-				u := (float64(i) + float64(j)/float64(steps)) / t.perPiece
-				if err := follow.advance(u); err != nil {
-					return nil, err
-				}
-				if err := harmonic.follow(complex(math.Tanh(u), 0) * follow.omega()); err != nil {
-					return nil, err
-				}
-				points[j] = trackPoint{omega: follow.omega(), north: harmonic.at(theta), south: harmonic.at(math.Pi - theta)}
-			}
-			t.points[i] = points
-			if off = halvedError(points) / (1 << trackOrder); off <= trackTolerance {
-				*f, *h = follow, harmonic
+		}
+		return true
+	}
+	panels, series, err := adapt(*sphere, curve.panels, trackFunctions, sample, small)
+	if err != nil {
+		return nil, fmt.Errorf("kerr: mode (%d,%d,%d): %w", l, m, n, err)
+	}
+	t := &ModeTrack{index: newPanelIndex(panels), powers: make([][panelNodes]trackPoint, len(panels))}
+	for i, s := range series {
+		for f := range s {
+			for k, v := range powers(s[f]) {
+				t.powers[i][k][f] = v
 			}
 		}
 	}
 	return t, nil
 }
 
-// halvedError returns the largest error, relative to |ω| or to the size of the
-// angular function, of odd points interpolated from the even ones. That of the
-// whole grid is 2⁶ times smaller.
-func halvedError(points []trackPoint) float64 {
-	var even []trackPoint
-	for i := 0; i < len(points); i += 2 {
-		even = append(even, points[i])
+// NewSphericalModeTrack is NewModeTrack with the spherical functions -2Y_lm in
+// place of the spheroidal ones: the same angular factors at every spin. It takes
+// some microseconds once the mode's record is decoded.
+func NewSphericalModeTrack(l, m, n int, theta float64) (*ModeTrack, error) {
+	curve, sphere, err := trackParts(l, m, n, theta)
+	if err != nil {
+		return nil, err
 	}
-	worst := 0.0
-	for i := 1; i < len(points); i += 2 {
-		got, want := interpolate(even, float64(i)/2), points[i]
-		// Along the axis all functions but those of m = ±2 vanish; the largest
-		// values of any are about 1.
-		angular := 1e-3 + cmplx.Abs(want.north) + cmplx.Abs(want.south)
-		worst = max(worst, cmplx.Abs(got.omega/want.omega-1),
-			cmplx.Abs(got.north-want.north)/angular, cmplx.Abs(got.south-want.south)/angular)
+	t := &ModeTrack{index: curve.index, powers: make([][panelNodes]trackPoint, len(curve.powers))}
+	north, south := sphere.at(theta), sphere.at(math.Pi-theta)
+	for i := range t.powers {
+		for k, v := range curve.powers[i] {
+			t.powers[i][k] = trackPoint{v[0], v[1]}
+		}
+		t.powers[i][0] = trackPoint{curve.powers[i][0][0], curve.powers[i][0][1], real(north), imag(north), real(south), imag(south)}
 	}
-	return worst
+	return t, nil
 }
 
-// interpolate returns the point at position x in units of steps.
-func interpolate(points []trackPoint, x float64) (p trackPoint) {
-	first, at := locate(x, len(points), trackOrder)
-	var weights [trackOrder]float64
-	stencil(at, weights[:])
-	for j, q := range points[first : first+trackOrder] {
-		w := weights[j]
-		p.omega += complex(w*real(q.omega), w*imag(q.omega))
-		p.north += complex(w*real(q.north), w*imag(q.north))
-		p.south += complex(w*real(q.south), w*imag(q.south))
+// trackParts checks the arguments of a track and returns what it starts from.
+func trackParts(l, m, n int, theta float64) (*modeCurve, *harmonic, error) {
+	if err := checkMode(l, m, n); err != nil {
+		return nil, nil, err
 	}
-	return p
+	if !(theta >= 0 && theta <= math.Pi) {
+		return nil, nil, fmt.Errorf("kerr: theta = %g rad, want 0 to π", theta)
+	}
+	curve, err := tabulatedCurve(l, m, n)
+	if err != nil {
+		return nil, nil, err
+	}
+	sphere, err := sphericalHarmonic(l, m)
+	return curve, sphere, err
 }
 
-// At returns Mω and the spheroidal function (see Spheroidal; γ = aω) at theta
-// and π - theta. Against QuasiNormalMode and Spheroidal the interpolation is off
-// by less than 1e-8 relative. A spin outside 0 to MaxSpin is an error. At
-// allocates nothing.
+// At returns Mω and the angular function at theta and π - theta. Against
+// QuasiNormalMode and Spheroidal, ω is off by less than 1e-11 relative and the
+// function by less than 1e-10 of its size. A spin outside 0 to MaxSpin is an
+// error. At allocates nothing.
 func (t *ModeTrack) At(spin float64) (omega, sNorth, sSouth complex128, err error) {
 	if err := checkSpin(spin); err != nil {
 		return 0, 0, 0, err
 	}
-	x := math.Atanh(spin) * t.perPiece
-	piece := min(int(x), trackPieces-1)
-	points := t.points[piece]
-	p := interpolate(points, (x-float64(piece))*float64(len(points)-1))
-	return p.omega, p.north, p.south, nil
+	i, x := t.index.locate(math.Atanh(spin))
+	p := &t.powers[i]
+	q := &p[panelNodes-1]
+	wr, wi, nr, ni, sr, si := q[0], q[1], q[2], q[3], q[4], q[5]
+	for k := panelNodes - 2; k >= 0; k-- {
+		q := &p[k]
+		wr, wi = wr*x+q[0], wi*x+q[1]
+		nr, ni = nr*x+q[2], ni*x+q[3]
+		sr, si = sr*x+q[4], si*x+q[5]
+	}
+	return complex(wr, wi), complex(nr, ni), complex(sr, si), nil
 }
