@@ -44,7 +44,7 @@ func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 		DisableSliceFlagSeparator: true,
 		Writer:                    stdout,
 		ErrWriter:                 stderr,
-		Commands:                  []*cli.Command{weighCommand(), checkCommand(), modesCommand(), barrierCommand()},
+		Commands:                  []*cli.Command{weighCommand(), checkCommand(), modesCommand(), barrierCommand(), echoCommand()},
 		// Errors come back to this function; nothing below it exits.
 		ExitErrHandler: func(*cli.Context, error) {},
 		OnUsageError: func(c *cli.Context, err error, _ bool) error {

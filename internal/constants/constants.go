@@ -20,6 +20,14 @@ const (
 	// PlanckLength is sqrt(hbar G / c^3) in metres (CODATA 2018).
 	PlanckLength = 1.616255e-35
 
+	// PlanckConstant is h in J s, exact by definition of the kilogram (SI
+	// brochure, 9th edition, 2019).
+	PlanckConstant = 6.62607015e-34
+
+	// BoltzmannConstant is k_B in J/K, exact by definition of the kelvin (SI
+	// brochure, 9th edition, 2019).
+	BoltzmannConstant = 1.380649e-23
+
 	// EarthSemiMajor and EarthSemiMinor are the axes of the WGS-84 ellipsoid in
 	// metres (NIMA TR8350.2, 3rd edition, 2000).
 	EarthSemiMajor = 6378137.0

@@ -138,10 +138,10 @@ func (a axis) sound() axis {
 		return a
 	}
 	a.low, a.high = max(a.low, -1e300), min(a.high, 1e300)
-	if size := max(math.Abs(a.low), math.Abs(a.high)); a.high-a.low <= 1e-9*size || size == 0 {
+	if size := max(math.Abs(a.low), math.Abs(a.high)); a.high-a.low <= 1e-9*size || size < 1e-290 {
 		// Less than an axis can name.
-		middle, half := (a.low+a.high)/2, max(0.05*size, 1e-300)
-		if size == 0 {
+		middle, half := a.low+(a.high-a.low)/2, 0.05*size
+		if size < 1e-290 {
 			half = 1
 		}
 		a.low, a.high = middle-half, middle+half

@@ -122,6 +122,7 @@ type mark struct {
 	at     float64
 	across bool
 	text   string
+	row    int // of the text, counted from the top, so that two names can stand apart
 	style  draw.LineStyle
 }
 
@@ -144,7 +145,7 @@ func (m mark) Plot(c draw.Canvas, p *plot.Plot) {
 	x := c.X(a.Norm(m.at))
 	c.StrokeLine2(m.style, x, c.Min.Y, x, c.Max.Y)
 	// On the side where there is room.
-	at := vg.Point{X: x + 3, Y: c.Max.Y - smallSize}
+	at := vg.Point{X: x + 3, Y: c.Max.Y - vg.Length(m.row+1)*(smallSize+2)}
 	if x+3+style.Width(m.text) > c.Max.X {
 		style.XAlign, at.X = draw.XRight, x-3
 	}

@@ -49,11 +49,11 @@ func tidy(x float64) float64 {
 // the labels do not crowd; over less than two decades at 1, 2, 5 times a power.
 func decadeTicks(low, high float64) []plot.Tick {
 	from, to := math.Floor(math.Log10(low)), math.Ceil(math.Log10(high))
-	every := 1.0
-	if n := math.Log10(high / low); n > maxTicks-1 {
-		every = math.Ceil(n / (maxTicks - 1))
+	every, decades := 1.0, math.Log10(high)-math.Log10(low)
+	if decades > maxTicks-1 {
+		every = math.Ceil(decades / (maxTicks - 1))
 	}
-	narrow := math.Log10(high/low) < 2
+	narrow := decades < 2
 	var ticks []plot.Tick
 	for e := from; e <= to; e++ {
 		for f := 1; f < 10; f++ {
