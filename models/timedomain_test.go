@@ -1,0 +1,279 @@
+package models
+
+import (
+	"math"
+	"math/cmplx"
+	"slices"
+	"testing"
+
+	"gonum.org/v1/gonum/dsp/fourier"
+
+	"knell/internal/checktable"
+	"knell/internal/constants"
+	"knell/models/kerr"
+)
+
+// timeCase is one model at one point of parameter space, as the tests of the
+// time domain take it. A new model adds its line to timeCases; the test
+// TestEveryModelHasATimeCase asks for it.
+type timeCase struct {
+	name string
+	s    Settings // without grid and length, which each test chooses
+	// values by parameter name; a parameter without one takes its default.
+	values map[string]float64
+	// begins is where the signal begins, in s after the analysis start, and ends, if
+	// not zero, where it has ended.
+	begins, ends float64
+	// kink says that the surface's law has a kink at k = 0. See notch.
+	kink bool
+}
+
+// remnant is what every case below shares.
+func remnant(more map[string]float64) map[string]float64 {
+	values := map[string]float64{"mass": 68, "spin": 0.69, "amplitude_220": 1, "phase_220": 1.1}
+	for name, v := range more {
+		values[name] = v
+	}
+	return values
+}
+
+var timeCases = []timeCase{
+	{name: "ringdown", s: Settings{Model: "ringdown", Modes: []string{"2,2,0"}, Inclination: 0.6}, values: remnant(nil)},
+	{name: "ringdown of five modes", s: Settings{Model: "ringdown", Modes: []string{"2,2,0", "2,2,1", "3,3,0", "2,1,0", "2,-2,0"}, Inclination: 1.9},
+		values: remnant(map[string]float64{"amplitude_221": 2, "phase_221": 4, "amplitude_330": 0.3, "phase_330": 0, "amplitude_210": 0.2, "phase_210": 3, "amplitude_2m20": 0.1, "phase_2m20": 5})},
+	{name: "ringdown, late", s: Settings{Model: "ringdown", Modes: []string{"2,2,0"}, Inclination: 0.6, Start: 0.003},
+		values: remnant(map[string]float64{"start_time": 0.103}), begins: 0.1},
+	{name: "ringdown, spherical", s: Settings{Model: "ringdown", Modes: []string{"2,2,0", "3,2,1"}, Inclination: 0.6, Angular: "spherical"},
+		values: remnant(map[string]float64{"amplitude_321": 1, "phase_321": 2})},
+	// The lead falls by 15 e-folds, 3e-7 in amplitude, within the time it is given.
+	{name: "ringdown with a lead", s: Settings{Model: "ringdown", Modes: []string{"2,2,0"}, Inclination: 0.6, Lead: 0.25}, values: remnant(nil), begins: -0.25},
+	{name: "cavity, constant", s: Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "constant", Inclination: 0.6},
+		values: remnant(map[string]float64{"offset": 0, "echo_phase": 0.4, "reflectivity": 0.9})},
+	{name: "cavity, two modes, even", s: Settings{Model: "cavity", Modes: []string{"2,2,0", "2,2,1"}, Reflectivity: "constant", Parity: "even", Inclination: 2.2},
+		values: remnant(map[string]float64{"amplitude_221": 2, "phase_221": 4, "offset": 10, "echo_phase": 3, "reflectivity": 0.6})},
+	{name: "cavity, Boltzmann", s: Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "boltzmann", Inclination: 0.6},
+		values: remnant(map[string]float64{"offset": 0, "echo_phase": 0.4, "reflectivity": 1, "temperature": 1}), kink: true},
+	{name: "cavity, membrane", s: Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "membrane", Inclination: 0.6},
+		values: remnant(map[string]float64{"offset": 0, "echo_phase": 0.4, "viscosity": 0.2})},
+	{name: "cavity, power", s: Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "power", Inclination: 0.6},
+		values: remnant(map[string]float64{"offset": 0, "echo_phase": 0.4, "reflectivity": 1, "corner": 3, "exponent": 2}), kink: true},
+	{name: "cavity, Lorentzian", s: Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "lorentzian", Inclination: 0.6},
+		values: remnant(map[string]float64{"offset": 0, "echo_phase": 0.4, "reflectivity": 1, "corner": 3})},
+	{name: "cavity, source", s: Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "constant", Excitation: "source", Inclination: 0.6},
+		values: remnant(map[string]float64{"offset": 0, "echo_phase": 0.4, "reflectivity": 0.9, "source_depth": 0.7})},
+	{name: "cavity, infall", s: Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "constant", Excitation: "infall", Inclination: 0.6},
+		values: remnant(map[string]float64{"offset": 0, "echo_phase": 0.4, "reflectivity": 0.9, "infall_amplitude": 3, "infall_phase": 2, "infall_width": 0.002})},
+	{name: "cavity, infall, Boltzmann", s: Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "boltzmann", Excitation: "infall", Inclination: 0.6},
+		values: remnant(map[string]float64{"offset": 0, "echo_phase": 0.4, "infall_amplitude": 3, "infall_phase": 2, "infall_width": 0.002, "infall_carrier": 0.8}), kink: true},
+	{name: "pulses", s: Settings{Model: "pulses", Modes: []string{"2,2,0"}, Inclination: 0.6},
+		values: remnant(map[string]float64{"pulse_delay": 0.21, "pulse_amplitude": 0.5, "pulse_damping": 0.7, "pulse_turn": math.Pi})},
+	{name: "pulses, rising and turning", s: Settings{Model: "pulses", Modes: []string{"2,2,0", "2,2,1"}, Inclination: 2.2},
+		values: remnant(map[string]float64{"amplitude_221": 2, "phase_221": 4, "pulse_delay": 0.21, "spacing_ratio": 1.1, "pulse_amplitude": 0.5, "pulse_damping": 0.7, "pulse_turn": 1, "pulse_rise": 0.002})},
+	{name: "comb", s: Settings{Model: "comb", Inclination: 0.6},
+		values: map[string]float64{"comb_amplitude": 1, "comb_phase": 2, "comb_delay": 0.1, "line_spacing": 3.4, "line_shift": 0.3, "line_width": 0.6, "band_centre": 230, "band_width": 70}, begins: 0.1},
+	{name: "comb with a ringdown, stretched", s: Settings{Model: "comb", Modes: []string{"2,2,0"}, Inclination: 0.6},
+		values: remnant(map[string]float64{"comb_amplitude": 1, "comb_phase": 2, "comb_delay": 0.3, "line_spacing": 3.4, "line_shift": 0.3, "line_width": 0.6, "line_stretch": 0.1, "band_centre": 230, "band_width": 70})},
+	// A Gaussian has no beginning: six widths from its middle there is erfc(6) = 2e-17
+	// of its energy.
+	{name: "burst", s: Settings{Model: "burst", Count: 2},
+		values: map[string]float64{
+			"amplitude_1": 1, "phase_1": 2, "time_1": 0.5, "frequency_1": 200, "width_1": 0.01, "ellipticity_1": 1, "orientation_1": 0,
+			"amplitude_2": 0.7, "phase_2": 1, "time_2": 0.6, "frequency_2": 90, "width_2": 0.004, "ellipticity_2": -0.3, "orientation_2": 1,
+		}, begins: 0.5 - 6*0.01, ends: 0.6 + 6*0.004},
+}
+
+func TestEveryModelHasATimeCase(t *testing.T) {
+	for _, name := range Names() {
+		if !slices.ContainsFunc(timeCases, func(c timeCase) bool { return c.s.Model == name }) {
+			t.Errorf("no time-domain case of model %s", name)
+		}
+	}
+	for _, law := range ReflectivityNames() {
+		if !slices.ContainsFunc(timeCases, func(c timeCase) bool { return c.s.Reflectivity == law }) {
+			t.Errorf("no time-domain case of reflectivity %s", law)
+		}
+	}
+}
+
+// thetaOf puts values into the order of the model's parameters.
+func thetaOf(t testing.TB, m Model, values map[string]float64) []float64 {
+	t.Helper()
+	theta := make([]float64, len(m.Parameters()))
+	known := map[string]bool{}
+	for i, p := range m.Parameters() {
+		v, given := values[p.Name]
+		if !given && !p.HasDefault {
+			t.Fatalf("no value of %s", p.Name)
+		}
+		if !given {
+			v = p.Default
+		}
+		theta[i] = v
+		known[p.Name] = true
+	}
+	for name := range values {
+		if !known[name] {
+			t.Fatalf("the model has no parameter %s", name)
+		}
+	}
+	return theta
+}
+
+// The sampling of the time-domain tests: far above the modes' 250 Hz.
+const timeRate = 32768.0 // Hz
+
+// probe looks at a signal through a filter that spreads it over probeSamples
+// samples to later times, and not to earlier ones: the difference of two boxes'
+// eightfold convolutions, one later than the other. Its transform is
+//
+//	sinc(f b)^8 exp(-8 pi i f b) (1 - exp(-2 pi i f w)),
+//
+// b four samples and w the length of the eightfold box. A signal that begins at the start
+// still begins there after it, however it is cut to a band: beyond the Nyquist
+// frequency, which the grid leaves out, the filter is below (2.5 pi)^-8 = 7e-8, and
+// at f = 0, which a grid cannot hold, it is nothing. So what a cut of the bare
+// spectrum rings into the time before the start (some 1e-4 of the energy, by
+// Parseval the share of the 1/f tail) is gone, and a limit of 1e-6 in energy is
+// one on the signal.
+const (
+	probeBox     = 4
+	probePower   = 8
+	probeSamples = 2 * probeBox * probePower
+)
+
+func probe(f float64) complex128 {
+	x := math.Pi * f * probeBox / timeRate
+	box := 1.0
+	if x != 0 {
+		box = math.Sin(x) / x
+	}
+	w := probeBox * probePower / timeRate
+	return cmplx.Rect(math.Pow(box, probePower), -probePower*x) * (1 - cmplx.Rect(1, -2*math.Pi*f*w))
+}
+
+// notch is probe with a zero at the frequency m Omega_H of the case's modes, by two
+// taps each side one after the other: it, too, moves nothing to earlier times.
+//
+// A law in |k| has a kink at k = 0. Such a law alone is not causal: a factor that is
+// real at every frequency answers a pulse as much before as after it, and the kink
+// makes that answer fall with the square of the time only. The tails of
+// exp(-|k| / 2 T_H) are those of a Lorentzian of half width 1 / 2 T_H, 15 M or 5 ms
+// at spin 0.69 and 68 solar masses; over a second they fall to some 1e-5 of the
+// peak. They are the published law's, not the transform's. With each zero in the
+// spectrum at k = 0 they fall faster by one power of (1 ms / time).
+func (c timeCase) notch(t testing.TB) func(f float64) complex128 {
+	if !c.kink {
+		return probe
+	}
+	var at []float64
+	for _, mode := range c.s.Modes {
+		_, m, _, err := ParseMode(mode)
+		if err != nil {
+			t.Fatal(err)
+		}
+		f := math.Abs(float64(m)) * kerr.HorizonFrequency(c.values["spin"]) / (2 * math.Pi * c.values["mass"] * constants.SolarMassSeconds)
+		if !slices.Contains(at, f) {
+			at = append(at, f)
+		}
+	}
+	const w = probeBox * probePower / timeRate
+	return func(f float64) complex128 {
+		product := probe(f)
+		for _, zero := range at {
+			e := cmplx.Rect(1, -2*math.Pi*f*w)
+			factor := 1 - complex(2*math.Cos(2*math.Pi*zero*w), 0)*e + e*e
+			product *= factor * factor
+		}
+		return product
+	}
+}
+
+// timeGrid is every frequency between zero and Nyquist of a segment.
+func timeGrid(duration float64) Grid {
+	return Grid{First: 1, Count: int(duration*timeRate)/2 - 1, Step: 1 / duration}
+}
+
+// timeSeries is h+ - i hx of a case at timeRate, through a filter, over a segment
+// that begins at the analysis start; the second half of it is the time before.
+func timeSeries(t testing.TB, c timeCase, duration, length float64, filter func(f float64) complex128) []complex128 {
+	t.Helper()
+	c.s.Grid, c.s.Length = timeGrid(duration), length
+	m := newTestModel(t, c.s)
+	return seriesThrough(fill(t, m, thetaOf(t, m, c.values), c.s.Grid.Count), c.s.Grid, filter)
+}
+
+// seriesThrough is h+ - i hx of a spectrum on a whole grid, filtered.
+func seriesThrough(h *Polarizations, g Grid, filter func(f float64) complex128) []complex128 {
+	n := 2 * (g.Count + 1)
+	fft := fourier.NewFFT(n)
+	transform := func(re, im []float64) []float64 {
+		c := make([]complex128, n/2+1)
+		for j := range re {
+			c[g.First+j] = complex(re[j], im[j]) * filter(g.Frequency(j)) * complex(g.Step, 0)
+		}
+		return fft.Sequence(nil, c)
+	}
+	plus, cross := transform(h.PlusRe, h.PlusIm), transform(h.CrossRe, h.CrossIm)
+	z := make([]complex128, n)
+	for i := range z {
+		z[i] = complex(plus[i], -cross[i])
+	}
+	return z
+}
+
+func energy(z []complex128) float64 {
+	sum := 0.0
+	for _, v := range z {
+		sum += real(v)*real(v) + imag(v)*imag(v)
+	}
+	return sum
+}
+
+func largestOf(z []complex128) float64 {
+	most := 0.0
+	for _, v := range z {
+		most = max(most, cmplx.Abs(v))
+	}
+	return most
+}
+
+// The energy before a signal's start, over the whole, kinks and all.
+func TestPhysicsNothingBeforeTheStart(t *testing.T) {
+	const duration = 4.0
+	table := checktable.New(t, "energy before the start (burst: outside its packets) over the whole; segment of 4 s, echoes within 1.5 s")
+	for _, c := range timeCases {
+		z := timeSeries(t, c, duration, 1.5, probe)
+		// From half the segment on it is the time before the analysis start; a signal
+		// that begins later, or with a lead, moves the end of that time.
+		first := int(math.Round(c.begins * timeRate))
+		before := energy(z[len(z)/2 : len(z)+min(first, 0)])
+		if first > 0 {
+			before += energy(z[:first])
+		}
+		if c.ends > 0 {
+			before += energy(z[int(math.Round(c.ends*timeRate))+probeSamples : len(z)/2])
+		}
+		table.Absolute(c.name, before/energy(z), 0, 1e-6, "causality")
+	}
+}
+
+// A segment twice as long holds the same signal in its first half: nothing wraps
+// around. The length of data after the start is the same, so that both hold the
+// same echoes, the last of which dies out within the shorter segment.
+func TestPhysicsNoWrapAround(t *testing.T) {
+	const duration = 2.0
+	table := checktable.New(t, "change of the first 2 s when the segment is 4 s instead, over the peak")
+	for _, c := range timeCases {
+		filter := c.notch(t)
+		short, long := timeSeries(t, c, duration, 1.5, filter), timeSeries(t, c, 2*duration, 1.5, filter)
+		worst, before := 0.0, int(math.Round(math.Min(c.begins, 0)*timeRate))
+		for i := range len(short) + before {
+			worst = max(worst, cmplx.Abs(short[i]-long[i]))
+		}
+		name := c.name
+		if c.kink {
+			name += ", with a zero at its kink"
+		}
+		table.Absolute(name, worst/largestOf(short), 0, 1e-6, "a signal that ends within the segment")
+	}
+}
