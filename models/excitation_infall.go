@@ -126,9 +126,11 @@ func (z pulse) weigh(omega0, step float64, values []float64) {
 }
 
 // fillTransmission writes the group's T at omega0 + j step. Beyond the barrier's
-// table nothing is reflected, so |T|^2 = k/omega, and the phase goes to its limit
-// with one over the frequency, as that of a short potential does; value and slope
-// join the table's.
+// table nothing is reflected, so |T|^2 = k/omega, and the phase is continued to a
+// limit with one over the frequency, as a potential that does not depend on the
+// frequency has it; value and slope join the table's. Between M omega = 1.7 and 2
+// that is off by 0.003 at spin 0 and by up to 0.1 at spin 0.95: a tenth of a
+// radian in the part of a very short pulse that no barrier holds back.
 func fillTransmission(g *group, shift, omega0, step float64, re, im []float64) error {
 	low, high := g.barrier.Range()
 	edge := high
