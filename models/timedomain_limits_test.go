@@ -133,7 +133,7 @@ func TestNothingAddedIsTheRingdown(t *testing.T) {
 				}
 				theta[0] = 20 + 100*rng.Float64() // where the band is
 				got, want := fill(t, surface, theta, grid.Count), fill(t, bare, theta[:ringdownSize], grid.Count)
-				if !sameBits(got, want) {
+				if !bitForBit(got, want) {
 					t.Fatalf("%+v at %g: not the ringdown", s, theta)
 				}
 			}
@@ -144,8 +144,8 @@ func TestNothingAddedIsTheRingdown(t *testing.T) {
 	}
 }
 
-// sameBits tells even 0 from -0.
-func sameBits(a, b *Polarizations) bool {
+// bitForBit tells even 0 from -0.
+func bitForBit(a, b *Polarizations) bool {
 	for i, list := range [][]float64{a.PlusRe, a.PlusIm, a.CrossRe, a.CrossIm} {
 		other := [][]float64{b.PlusRe, b.PlusIm, b.CrossRe, b.CrossIm}[i]
 		for j := range list {
@@ -171,7 +171,7 @@ func TestNothingAtAmplitudeZero(t *testing.T) {
 				theta[i] = 0
 			}
 		}
-		if !sameBits(fill(t, m, theta, c.s.Grid.Count), NewPolarizations(c.s.Grid.Count)) {
+		if !bitForBit(fill(t, m, theta, c.s.Grid.Count), NewPolarizations(c.s.Grid.Count)) {
 			t.Errorf("%s: something is left", c.name)
 		}
 	}
