@@ -30,7 +30,7 @@ func analytic(t testing.TB, c timeCase, duration, length float64) []complex128 {
 	t.Helper()
 	c.s.Grid, c.s.Length = timeGrid(duration), length
 	m := newTestModel(t, c.s)
-	theta := thetaOf(t, m, c.values)
+	theta := thetaByName(t, m, c.values)
 	series := func() []complex128 {
 		return seriesThrough(fill(t, m, theta, c.s.Grid.Count), c.s.Grid, c.notch(t))
 	}
@@ -51,7 +51,7 @@ func trainOf(t testing.TB, c timeCase, duration float64, last int) echoTrain {
 	t.Helper()
 	c.s.Grid, c.s.Length = timeGrid(duration), 1
 	m := newTestModel(t, c.s)
-	theta := thetaOf(t, m, c.values)
+	theta := thetaByName(t, m, c.values)
 	c.values = map[string]float64{}
 	for i, p := range m.Parameters() {
 		c.values[p.Name] = theta[i]

@@ -165,7 +165,7 @@ func TestNothingAtAmplitudeZero(t *testing.T) {
 		}
 		c.s.Grid, c.s.Length = Grid{First: 60, Count: 400, Step: 2.5}, 1.7
 		m := newTestModel(t, c.s)
-		theta := thetaOf(t, m, c.values)
+		theta := thetaByName(t, m, c.values)
 		for i, p := range m.Parameters() {
 			if strings.Contains(p.Name, "amplitude") {
 				theta[i] = 0

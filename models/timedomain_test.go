@@ -95,8 +95,8 @@ func TestEveryModelHasATimeCase(t *testing.T) {
 	}
 }
 
-// thetaOf puts values into the order of the model's parameters.
-func thetaOf(t testing.TB, m Model, values map[string]float64) []float64 {
+// thetaByName puts values into the order of the model's parameters.
+func thetaByName(t testing.TB, m Model, values map[string]float64) []float64 {
 	t.Helper()
 	theta := make([]float64, len(m.Parameters()))
 	known := map[string]bool{}
@@ -199,7 +199,7 @@ func timeSeries(t testing.TB, c timeCase, duration, length float64, filter func(
 	t.Helper()
 	c.s.Grid, c.s.Length = timeGrid(duration), length
 	m := newTestModel(t, c.s)
-	return seriesThrough(fill(t, m, thetaOf(t, m, c.values), c.s.Grid.Count), c.s.Grid, filter)
+	return seriesThrough(fill(t, m, thetaByName(t, m, c.values), c.s.Grid.Count), c.s.Grid, filter)
 }
 
 // seriesThrough is h+ - i hx of a spectrum on a whole grid, filtered.
