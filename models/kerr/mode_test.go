@@ -8,55 +8,6 @@ import (
 	"testing"
 )
 
-// TestQuasiNormalModeTable compares with numbers computed at 34 digits by two
-// other methods; see testdata/qnm.csv.
-func TestQuasiNormalModeTable(t *testing.T) {
-	// The roots of the fraction move by 1e-13 with its depth and inversion;
-	// their conditioning at these overtones costs at most one digit more.
-	const tol = 2e-12
-	var worst float64
-	for _, row := range readTable(t, "qnm.csv") {
-		l, m, n, spin := int(row["l"]), int(row["m"]), int(row["n"]), row["a"]
-		got, err := QuasiNormalMode(l, m, n, spin)
-		if err != nil {
-			t.Error(err)
-			continue
-		}
-		wantW, wantA := complex(row["re_omega"], row["im_omega"]), complex(row["re_A"], row["im_A"])
-		errW, errA := cmplx.Abs(got.Omega-wantW), cmplx.Abs(got.Separation-wantA)
-		worst = max(worst, errW, errA)
-		if errW > tol || errA > 10*tol {
-			t.Errorf("(%d,%d,%d) a=%g: ω = %.15g, A = %.15g, want %.15g, %.15g", l, m, n, spin, got.Omega, got.Separation, wantW, wantA)
-		}
-	}
-	t.Logf("largest difference in ω and A: %.1e", worst)
-}
-
-// TestQuasiNormalModeNonSpinning compares with the printed table of Proc. R.
-// Soc. A 402, 285 (1985), in its units 2M = 1 and with its six decimals.
-func TestQuasiNormalModeNonSpinning(t *testing.T) {
-	for l, rows := range map[int][]complex128{
-		2: {0.747343 - 0.177925i, 0.693422 - 0.547830i, 0.602107 - 0.956554i, 0.503010 - 1.410296i,
-			0.415029 - 1.893690i, 0.338599 - 2.391216i, 0.266505 - 2.895822i},
-		3: {1.198887 - 0.185406i, 1.165288 - 0.562596i, 1.103370 - 0.958186i, 1.023924 - 1.380674i},
-		4: {1.618357 - 0.188328i, 1.593263 - 0.568669i},
-	} {
-		for n, want := range rows {
-			got, err := QuasiNormalMode(l, 0, n, 0)
-			if err != nil {
-				t.Error(err)
-				continue
-			}
-			d := 2*got.Omega - want
-			// Half a unit of the last place; the last row of l = 2 is printed
-			// one unit off.
-			if tol := 1.01e-6; math.Abs(real(d)) > tol || math.Abs(imag(d)) > tol {
-				t.Errorf("l=%d n=%d: 2Mω = %.6f, want %.6f", l, n, 2*got.Omega, want)
-			}
-		}
-	}
-}
-
 // TestQuasiNormalModesReachMaxSpin follows every mode over the whole range and
 // holds its end against things that are known there without the fraction's
 // help: decay, Re ω > 0, and a root that neither depth nor inversion moves
