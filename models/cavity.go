@@ -43,6 +43,10 @@ type Cavity struct {
 	// excitation's parameters.
 	offsetIndex, echoPhaseIndex, lawIndex, excitationIndex int
 
+	// surface and its method value, for package kerr to ask.
+	surface        *surface
+	reflectivityAt func(k float64) float64
+
 	groups   []group
 	rs       []float64 // surface reflectivity
 	rRe, rIm []float64 // the barrier's reflection, or its transmission
@@ -138,6 +142,8 @@ func (c *Cavity) prepared() (*Cavity, error) {
 		return nil, err
 	}
 	c.groups = groups
+	c.surface = &surface{law: c.law}
+	c.reflectivityAt = c.surface.at
 	n := c.grid.Count
 	c.rs, c.rRe, c.rIm = make([]float64, n), make([]float64, n), make([]float64, n)
 	c.eRe, c.eIm = make([]float64, n), make([]float64, n)
@@ -151,7 +157,9 @@ func (c *Cavity) Parameters() []Parameter { return c.parameters }
 
 // Derived implements Model.
 func (c *Cavity) Derived() []Parameter {
-	return append(c.ringing.derived(), Parameter{Name: "echo_delay", Unit: "s", Note: "time between echoes"})
+	return append(c.ringing.derived(),
+		Parameter{Name: "echo_delay", Unit: "s", Note: "time between echoes"},
+		Parameter{Name: "growth_time", Unit: "s", Note: "e-folding time of the fastest growing cavity mode; +Inf is stable"})
 }
 
 // Derive implements Model.
@@ -159,7 +167,8 @@ func (c *Cavity) Derive(theta, out []float64) error {
 	if err := c.ringing.derive(theta[0], theta[1], out); err != nil {
 		return err
 	}
-	out[2*len(c.ringing.tracks)] = c.echoDelay(theta)
+	n := 2 * len(c.ringing.tracks)
+	out[n], out[n+1] = c.echoDelay(theta), c.growthTime(theta)
 	return nil
 }
 

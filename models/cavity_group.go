@@ -11,7 +11,7 @@ import (
 
 // group is the modes of one (l, m), which share a barrier and an echo sum.
 type group struct {
-	m       int
+	l, m    int
 	modes   []int // indices of the modes, in their order
 	barrier *kerr.Barrier
 	spin    float64 // that the barrier is set to; below 0 before the first
@@ -36,7 +36,7 @@ func newGroups(labels []modeLabel, parity kerr.Parity) ([]group, error) {
 		if err != nil {
 			return nil, &SettingError{"modes", strconv.Quote(fmt.Sprintf("%d,%d,%d", label.l, label.m, label.n)), "a mode whose barrier is tabulated (" + err.Error() + ")"}
 		}
-		groups = append(groups, group{m: label.m, modes: []int{i}, barrier: barrier, spin: -1})
+		groups = append(groups, group{l: label.l, m: label.m, modes: []int{i}, barrier: barrier, spin: -1})
 	}
 	return groups, nil
 }
