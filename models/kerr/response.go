@@ -48,6 +48,8 @@ type Response struct {
 	Transmission complex128 // T, the same for both parities
 	Separation   float64    // A for spin weight -2
 	Greybody     float64    // 1 - |R|², computed as (ω/k)|T|² so that it keeps its digits
+
+	ratio float64 // ω/k
 }
 
 // MaxFrequency is the largest |Mω| of BarrierResponse.
@@ -122,7 +124,8 @@ func respond(m int, spin, omega, separation float64, parity Parity) (Response, e
 		Separation:   separation,
 	}
 	size := cmplx.Abs(res.Transmission)
-	res.Greybody = w * size * size / (kh * d / (2 * b.rp))
+	res.ratio = w / (kh * d / (2 * b.rp))
+	res.Greybody = res.ratio * size * size
 	return res, nil
 }
 
