@@ -9,9 +9,9 @@ var lorentzianLaw = reflectivity{
 		cornerParameter(),
 	},
 	fill: func(law []float64, temperature, k0, dk float64, rs []float64) {
-		corner := law[1] * temperature
+		inverse := 1 / (law[1] * temperature)
 		for j := range rs {
-			x := (k0 + float64(j)*dk) / corner
+			x := (k0 + float64(j)*dk) * inverse
 			rs[j] = law[0] / (1 + x*x)
 		}
 	},
