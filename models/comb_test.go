@@ -35,6 +35,8 @@ func TestCombReducesToTheRingdownAndToNothing(t *testing.T) {
 	}
 	own[2] = 1.8
 	mustEqual(t, "first pulse after the data", fill(t, m, append([]float64{0.001}, own...), s.Grid.Count), zero)
+	own[2] = 1.7
+	mustEqual(t, "a late start puts the first pulse after the data", fill(t, m, append([]float64{0.06}, own...), s.Grid.Count), zero)
 }
 
 // The spectrum is the FFT of the sampled train of pulses, written out in time. The

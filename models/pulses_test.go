@@ -39,6 +39,10 @@ func TestPulsesWithoutCopiesAreTheRingdown(t *testing.T) {
 			if h := fill(t, m, append(ring[:7:7], 1.7, 1, 0.7, 0.5, math.Pi, 1e-3), s.Grid.Count); h.PlusRe[300] == want.PlusRe[300] {
 				t.Error("a copy within the data changes nothing: this test sees nothing")
 			}
+			ring[2] += 0.06
+			s.Model = "ringdown"
+			want = fill(t, newTestModel(t, s), ring, s.Grid.Count)
+			mustEqual(t, "a late start puts the first copy after the data", fill(t, m, append(ring[:7:7], 1.7, 1, 0.7, 0.5, math.Pi, 1e-3), s.Grid.Count), want)
 		}
 	}
 }

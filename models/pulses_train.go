@@ -55,48 +55,45 @@ func newSums(n int) sums {
 
 // fill writes the factors of t over the grid.
 func (s *sums) fill(t train, g Grid) {
-	s.fillOne(t, g, 1, s.vRe, s.vIm)
-	if isHalfTurns(t.startTurn) && isHalfTurns(t.pulseTurn) && t.stretch == 0 {
-		// Both senses of turning are one.
-		copy(s.uRe, s.vRe)
-		copy(s.uIm, s.vIm)
-		return
-	}
-	s.fillOne(t, g, -1, s.uRe, s.uIm)
-}
-
-func isHalfTurns(turn float64) bool {
-	return turn == 0 || turn == math.Pi || turn == 2*math.Pi
-}
-
-func (s *sums) fillOne(t train, g Grid, sense float64, re, im []float64) {
 	n := g.Count
 	step := -2 * math.Pi * g.Step
-	fillTurns(-sense*t.startTurn, step*t.delay, float64(g.First), re[:n], im[:n])
-	cos, sin := s.cos[:n], s.sin[:n]
-	if t.count > 1 {
-		fillTurns(-sense*t.pulseTurn, step*t.spacing, float64(g.First), cos, sin)
+	vRe, vIm, uRe, uIm, cos, sin := s.vRe[:n], s.vIm[:n], s.uRe[:n], s.uIm[:n], s.cos[:n], s.sin[:n]
+	fillTurns(0, step*t.delay, float64(g.First), uRe, uIm)
+	fillTurns(0, step*t.spacing, float64(g.First), cos, sin)
+	startSin, startCos := math.Sincos(t.startTurn)
+	startSin, startCos = startSin*t.first, startCos*t.first
+	turnSin, turnCos := math.Sincos(t.pulseTurn)
+	turnSin, turnCos = turnSin*t.damping, turnCos*t.damping
+	// Half turns are the same in both senses.
+	alike := t.stretch == 0 && (t.pulseTurn == 0 || t.pulseTurn == math.Pi || t.pulseTurn == 2*math.Pi)
+	for j := range vRe {
+		c, s := cos[j], sin[j]
+		qr, qi := c*turnCos+s*turnSin, s*turnCos-c*turnSin
+		pr, pi := c*turnCos-s*turnSin, s*turnCos+c*turnSin
 		if t.stretch != 0 {
-			t.disperse(g, sense, cos, sin)
+			f := g.Frequency(j)
+			s, c = t.dispersion(f - t.centre)
+			qr, qi = qr*c-qi*s, qr*s+qi*c
+			s, c = t.dispersion(f + t.centre)
+			pr, pi = pr*c+pi*s, pi*c-pr*s
 		}
-	}
-	re, im = re[:n], im[:n]
-	for j := range re {
-		sr, si := t.first, 0.0
-		if t.count > 1 {
-			sr, si = geometricSum(t.damping*cos[j], t.damping*sin[j], t.count)
-			sr, si = t.first*sr, t.first*si
+		qr, qi = geometricSum(qr, qi, t.count)
+		if alike {
+			pr, pi = qr, qi
+		} else {
+			pr, pi = geometricSum(pr, pi, t.count)
 		}
-		re[j], im[j] = re[j]*sr-im[j]*si, re[j]*si+im[j]*sr
+		c, s = uRe[j], uIm[j]
+		ar, ai := c*startCos+s*startSin, s*startCos-c*startSin
+		br, bi := c*startCos-s*startSin, s*startCos+c*startSin
+		vRe[j], vIm[j] = ar*qr-ai*qi, ar*qi+ai*qr
+		uRe[j], uIm[j] = br*pr-bi*pi, br*pi+bi*pr
 	}
 }
 
-// disperse multiplies q by its phase from the stretch.
-func (t train) disperse(g Grid, sense float64, cos, sin []float64) {
-	turns := sense * 2 * math.Pi * t.spacing * t.stretch * t.scale
-	for j := range cos {
-		u := (g.Frequency(j) - sense*t.centre) / t.scale
-		s, c := math.Sincos(turns * (math.Sqrt(1+u*u) - 1))
-		cos[j], sin[j] = cos[j]*c-sin[j]*s, cos[j]*s+sin[j]*c
-	}
+// dispersion is sine and cosine of the phase that the stretch gives q beside V at
+// a distance from the centre.
+func (t *train) dispersion(distance float64) (sin, cos float64) {
+	u := distance / t.scale
+	return math.Sincos(2 * math.Pi * t.spacing * t.stretch * t.scale * (math.Sqrt(1+u*u) - 1))
 }
