@@ -25,7 +25,14 @@ const angularTerms = 60
 // angularFraction returns the angular continued fraction inverted at index
 // l - max(|m|,|s|), as a function of the separation constant; it vanishes at an
 // eigenvalue. Source: Proc. R. Soc. A 402, 285 (1985), eqs. 20-21.
+//
+// The series behind it has the factor exp(c cosθ) and powers of 1 + cosθ, and
+// loses up to eight digits to it where Re c is large and positive; turned around,
+// θ → π - θ with m and c → -m and -c, it does not.
 func angularFraction(l, m int, c, separation complex128) complex128 {
+	if real(c) > 0 {
+		m, c = -m, -c
+	}
 	const s = float64(spinWeight)
 	k1, k2 := absInt(m-spinWeight), absInt(m+spinWeight)
 	h1, h2 := float64(k1)/2, float64(k2)/2
