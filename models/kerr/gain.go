@@ -148,8 +148,8 @@ func newBand(l, m int, spin float64) band {
 }
 
 // angularShift returns ν2 of the renormalised angular momentum
-// ν = l + ν2 (2ω)² + O(ω³) (Living Rev. Relativ. 6, 6 (2003)). A test shows that
-// with another exponent the table is a hundred times worse.
+// ν = l + ν2 (2ω)² + O(ω³) (Living Rev. Relativ. 6, 6 (2003)). Without it
+// TestGainTable fails.
 func angularShift(l int) float64 {
 	const s2 = spinWeight * spinWeight
 	x := float64(l)

@@ -24,10 +24,13 @@ import (
 // at Re k; that is exact for constant and Boltzmann laws, and of relative order
 // (Im ω/κ)² for others.
 //
+// Where dR/dω makes τ negative the wave turns back behind the surface; such parts of
+// the band are left out, and a surface outside of all of it is an error. So is a mode
+// that grows e-fold within 2/κ: neither is a cavity that echoes.
+//
 // |q| at ω is good to 1e-6 of |R|-1. l runs from 2 to 4, |m| <= l, spin from 0 to
-// MaxSpin. A round trip that takes no positive time, or a mode that grows e-fold
-// within 2/κ, for which nothing here is made, is an error. Cost some tens of µs
-// (and 30 ms for a table at the first call of an (l, |m|)).
+// MaxSpin. Cost some tens of µs, without allocation (and 35 ms for a table at the
+// first call of an (l, |m|)).
 func FastestGrowth(l, m int, parity Parity, spin, x0, phase float64, reflectivity func(k float64) float64) (omega complex128, growing bool, err error) {
 	if err := parity.check(); err != nil {
 		return 0, false, err
@@ -66,44 +69,50 @@ type cavity struct {
 // fastest returns the fastest growing mode, or 0.
 func (c *cavity) fastest() (complex128, error) {
 	// The rate ln|q|/τ of each point; turns counts 2π of arg q.
-	var p, rate, turns [searchSteps + 1]float64
-	for i := range p {
-		p[i] = c.searched(float64(i) / searchSteps)
-		lnq, slope := c.lnQ(complex(c.turn-p[i], 0))
-		if !(imag(slope) > 0) {
-			return 0, fmt.Errorf("kerr: surface at r* = %g: a round trip at Mω = %.4g takes %.4g M, want more than 0", c.x0, c.turn-p[i], imag(slope))
-		}
-		rate[i], turns[i] = real(lnq)/imag(slope), imag(lnq)/(2*math.Pi)
+	var rate, turns [searchSteps + 1]float64
+	first, last, delay := math.Inf(1), math.Inf(-1), 0.0
+	for i := range rate {
+		rate[i], turns[i], delay = c.rate(float64(i)/searchSteps, delay)
+		first, last = min(first, turns[i]), max(last, turns[i])
 	}
-	first, last := math.Ceil(turns[searchSteps]), math.Floor(turns[0])
+	first, last = math.Ceil(first), math.Floor(last)
+	if delay <= 0 {
+		return 0, fmt.Errorf("kerr: surface at r* = %g: no wave between it and the barrier takes time for a round trip", c.x0)
+	}
 	var best complex128
-	for i := range p {
+	for i := range rate {
 		before, after := max(i-1, 0), min(i+1, searchSteps)
 		if rate[i] < rate[before] || rate[i] < rate[after] || math.IsInf(rate[i], -1) {
 			continue
 		}
-		s, top := refine(func(s float64) float64 {
-			lnq, slope := c.lnQ(complex(c.turn-c.searched(s), 0))
-			return real(lnq) / imag(slope)
-		}, float64(before)/searchSteps, float64(i)/searchSteps, float64(after)/searchSteps, rate[i])
+		s, top := refine(func(s float64) float64 { rate, _, _ := c.rate(s, 0); return rate },
+			float64(before)/searchSteps, float64(i)/searchSteps, float64(after)/searchSteps, rate[i])
 		if top <= 0 {
 			continue
 		}
-		at := c.turn - c.searched(s)
-		lnq, slope := c.lnQ(complex(at, 0))
-		n := math.Floor(imag(lnq) / (2 * math.Pi))
-		for n, end := max(n-1, first), min(n+2, last); n <= end; n++ {
-			guess := at + (2*math.Pi*n-imag(lnq))/imag(slope)
-			omega, err := c.mode(n, complex(min(max(guess, 0), c.turn), top))
+		_, at, _ := c.rate(s, 0)
+		for n, end := max(math.Floor(at)-1, first), min(math.Floor(at)+2, last); n <= end; n++ {
+			omega, err := c.mode(n, c.guess(n, &turns, &rate))
 			if err != nil {
 				return 0, err
 			}
-			if imag(omega) > imag(best) {
+			if imag(omega) > imag(best) && real(omega) >= 0 && real(omega) <= c.turn {
 				best = omega
 			}
 		}
 	}
 	return best, nil
+}
+
+// rate returns ln|q|/τ, arg q/2π and the larger of τ and delay at searched(s). Where τ
+// is not positive the wave turns back behind the surface, and the rate is -Inf.
+func (c *cavity) rate(s, delay float64) (rate, turns, longest float64) {
+	lnq, slope := c.lnQ(complex(c.turn-c.searched(s), 0))
+	rate, tau := math.Inf(-1), imag(slope)
+	if tau > 0 {
+		rate = real(lnq) / tau
+	}
+	return rate, imag(lnq) / (2 * math.Pi), max(tau, delay)
 }
 
 // lnQ returns ln q without jumps and its derivative at complex ω near the band.
@@ -123,18 +132,37 @@ func (c *cavity) lnQ(omega complex128) (lnq, slope complex128) {
 	return lnq + complex(0, imag(omega)*rsSlope), slope
 }
 
-// mode solves ln q = 2πin from a guess.
+// guess starts mode n from the search's points on either side of it.
+func (c *cavity) guess(n float64, turns, rate *[searchSteps + 1]float64) complex128 {
+	i := 0
+	for i < searchSteps-1 && turns[i+1] > n {
+		i++
+	}
+	f := min(max((turns[i]-n)/(turns[i]-turns[i+1]), 0), 1)
+	re := c.turn - (1-f)*c.searched(float64(i)/searchSteps) - f*c.searched(float64(i+1)/searchSteps)
+	im := (1-f)*rate[i] + f*rate[i+1]
+	if !(math.Abs(im) < c.kappa/4) {
+		im = 0
+	}
+	return complex(re, im)
+}
+
+// mode solves ln q = 2πin from a guess; of a mode that decays fast it only says so.
 func (c *cavity) mode(n float64, omega complex128) (complex128, error) {
 	want := complex(0, 2*math.Pi*n)
+	from := omega
 	for range 40 {
 		lnq, slope := c.lnQ(omega)
 		if cmplx.Abs(want-lnq) <= 1e-14*(10+math.Abs(2*c.x0*c.turn)) {
 			return omega, nil
 		}
 		omega += (want - lnq) / slope
-		if !(math.Abs(imag(omega)) <= c.kappa/2) {
+		if imag(omega) < -c.kappa/2 {
+			return omega, nil // it decays, that is all that is asked
+		}
+		if !(imag(omega) <= c.kappa/2) {
 			break
 		}
 	}
-	return 0, fmt.Errorf("kerr: surface at r* = %g: mode near Mω = %.4g not found, want one that takes more than %.4g M to grow e-fold", c.x0, real(omega), 2/c.kappa)
+	return 0, fmt.Errorf("kerr: surface at r* = %g: no mode found near Mω = %.4g, want one that takes more than %.4g M to grow e-fold", c.x0, real(from), 2/c.kappa)
 }

@@ -16,11 +16,11 @@ import "math"
 // grows nor decays, and counts as stable. For m = 0 and spin 0 the band is that one
 // point, and the result Rs(0), at ω = 0.
 //
-// The excess over 1 is good to 1e-6 of the barrier's own gain |R|-1 (1e-7 for l =
+// An excess below 1e-16 is lost in the result. Above, it is good to 1e-6 of the barrier's own gain |R|-1 (1e-7 for l =
 // 2). A reflectivity that is not smooth on the scale of a tenth of the band may hide a
 // narrower maximum. l runs from 2 to 4, |m| <= l, spin from 0 to MaxSpin. Cost
-// some µs, without allocation; the first call for an (l, |m|) computes a table
-// (30 ms).
+// some µs, without allocation; the first call for an (l, |m|) computes a table (30
+// ms).
 func MaxLoop(l, m int, spin float64, reflectivity func(k float64) float64) (gain, omega float64, err error) {
 	b, side, err := loopBand(l, m, spin)
 	if err != nil {
