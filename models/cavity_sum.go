@@ -79,9 +79,14 @@ func (c *Cavity) fillRoundTrip(g *group, p place, step float64, from int, re, im
 	return nil
 }
 
+// lnLargestPower bounds the powers of q: where |q| > 1 the sum ends at 1e100, so
+// that it stays a number. Perturbations are no longer small long before.
+const lnLargestPower = 230
+
 // sumPowers replaces q by 1 + q + ... to that many terms, at least one.
 func sumPowers(terms uint, re, im []float64) {
 	im = im[:len(re)]
+	limit := math.Exp(2 * lnLargestPower / float64(terms))
 	for j := range re {
 		qr, qi := re[j], im[j]
 		switch square := qr*qr + qi*qi; {
@@ -92,6 +97,8 @@ func sumPowers(terms uint, re, im []float64) {
 			sr, si := 1+qr, qi
 			sr, si = 1+qr*sr-qi*si, qr*si+qi*sr
 			re[j], im[j] = 1+qr*sr-qi*si, qr*si+qi*sr
+		case square > limit:
+			re[j], im[j] = geometricSum(qr, qi, uint(2*lnLargestPower/math.Log(square))+1)
 		default:
 			re[j], im[j] = geometricSum(qr, qi, terms)
 		}
