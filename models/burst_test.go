@@ -7,6 +7,8 @@ import (
 	"testing"
 
 	"gonum.org/v1/gonum/dsp/fourier"
+
+	"knell/internal/checktable"
 )
 
 // packet is amplitude, phase, time, frequency, width, ellipticity, orientation.
@@ -90,7 +92,9 @@ func TestBurstIsTheFFT(t *testing.T) {
 }
 
 // Time, frequency and width from the moments of the energy.
-func TestBurstMoments(t *testing.T) {
+func TestPhysicsBurstMoments(t *testing.T) {
+	table := checktable.New(t, "moments of a wave packet's energy, from its spectrum and its inverse FFT")
+	const source = "the packet's definition"
 	const duration, n = 2.0, 1 << 14
 	const time, frequency, width, start = 0.2, 180.0, 0.015, 0.05
 	s := Settings{Model: "burst", Count: 1, Grid: wholeGrid(duration, n), Start: start}
@@ -106,15 +110,13 @@ func TestBurstMoments(t *testing.T) {
 	}
 	mean, deviation := moments(func(j int) float64 { return h.PlusRe[j]*h.PlusRe[j] + h.PlusIm[j]*h.PlusIm[j] }, s.Grid.Frequency, s.Grid.Count)
 	// The energy is the square: a Gaussian of 1/(2 pi width sqrt 2) in frequency.
-	if want := 1 / (2 * math.Sqrt2 * math.Pi * width); math.Abs(mean-frequency) > 1e-6 || math.Abs(deviation-want) > 1e-4*want {
-		t.Errorf("energy at %g +- %g Hz, want %g +- %g", mean, deviation, frequency, want)
-	}
+	table.Absolute("mean frequency (Hz)", mean, frequency, 1e-6, source)
+	table.Relative("deviation in frequency (Hz)", deviation, 1/(2*math.Sqrt2*math.Pi*width), 1e-4, source)
 	// With the window of inTime the mean frequency moves, the time and width hardly.
 	plus, cross := inTime(t, s, thetaOf(packet{1, 1, time, frequency, width, 1, 0}))
 	mean, deviation = moments(func(i int) float64 { return plus[i]*plus[i] + cross[i]*cross[i] }, func(i int) float64 { return float64(i)*duration/n - duration/4 + start }, n)
-	if want := width / math.Sqrt2; math.Abs(mean-time) > 1e-6 || math.Abs(deviation-want) > 2e-3*want {
-		t.Errorf("energy at %g +- %g s, want %g +- %g", mean, deviation, time, want)
-	}
+	table.Absolute("mean time (s)", mean, time, 1e-6, source)
+	table.Relative("deviation in time (s)", deviation, width/math.Sqrt2, 2e-3, source)
 }
 
 // At ellipticity 1 the handedness is that of an m = 2 mode from above, at -1 that

@@ -1,12 +1,15 @@
 package models
 
 import (
+	"fmt"
 	"math"
 	"math/cmplx"
 	"math/rand/v2"
 	"testing"
 
 	"gonum.org/v1/gonum/dsp/fourier"
+
+	"knell/internal/checktable"
 )
 
 // pulsesTheta is one mode with mass 68, spin 0.69 and a start at 0; then delay,
@@ -168,7 +171,8 @@ func energyBefore(x []float64, end int) float64 {
 	return before / all
 }
 
-func TestPulsesComeWhenPredicted(t *testing.T) {
+func TestPhysicsPulses(t *testing.T) {
+	table := checktable.New(t, "copies of the ringdown, by correlation with it in the inverse FFT at 16384 Hz")
 	const duration, n = 2.0, 1 << 15
 	const rate = n / duration
 	s := Settings{Model: "pulses", Modes: []string{"2,2,0"}, Grid: wholeGrid(duration, n), Inclination: 0.4, Length: 1.4}
@@ -212,15 +216,11 @@ func TestPulsesComeWhenPredicted(t *testing.T) {
 			for i := n/4 - 20; i < n/4+wide; i++ {
 				norm += ring[i] * ring[i]
 			}
-			if math.Abs(float64(at)-want) > 1 {
-				t.Errorf("copy %d stands at sample %d, want %.1f", k+1, at, want)
-			}
+			table.Absolute(fmt.Sprintf("copy %d: arrival (samples)", k+1), float64(at), want, 1, "delay (1 + (n-1) ratio)")
 			// The largest correlation over whole samples is within (omega dt / 2)^2 / 2
 			// = 0.2 % of the true one.
 			factor := amplitude * math.Pow(-damping, float64(k)) * -1
-			if math.Abs(best/norm-factor) > 5e-3*math.Abs(factor) {
-				t.Errorf("copy %d has the factor %.4f, want %.4f: every other one is flipped", k+1, best/norm, factor)
-			}
+			table.Relative(fmt.Sprintf("copy %d: factor, every other one flipped", k+1), best/norm, factor, 5e-3, "amplitude damping^(n-1) (-1)^n")
 		}
 	}
 }
