@@ -26,10 +26,10 @@ func barrierCommand() *cli.Command {
 		Flags: append([]cli.Flag{
 			&cli.IntFlag{Name: "l", Value: 2, Usage: "polar number"},
 			&cli.IntFlag{Name: "m", Value: 2, Usage: "azimuthal number"},
-			&cli.Float64Flag{Name: "spin", Usage: "dimensionless spin"},
+			&cli.Float64Flag{Name: "spin", DefaultText: "must be given", Usage: "dimensionless spin"},
 			&cli.StringSliceFlag{Name: "omega", Usage: "frequencies M omega, a `LIST`; may be given several times"},
 			&cli.StringFlag{Name: "parity", Value: "odd", Usage: "odd (Regge-Wheeler at spin 0) or even (Zerilli): the phase of R"},
-			&cli.Float64Flag{Name: "mass", Usage: "detector-frame mass in solar masses, for Hz"},
+			&cli.Float64Flag{Name: "mass", DefaultText: "none", Usage: "detector-frame mass in solar masses, for Hz"},
 			jsonFlag(),
 		}, pictureFlags()...),
 		Action: barrier,
@@ -107,10 +107,12 @@ func (w *barrierWave) points(omega []float64) ([]report.BarrierPoint, error) {
 		if err != nil {
 			return nil, &usageError{strings.TrimPrefix(err.Error(), "kerr: ")}
 		}
+		reflected, transmitted := r.FromInfinity()
 		points[i] = report.BarrierPoint{
 			Omega: report.Number(x), Wave: report.Number(x - float64(w.m)*kerr.HorizonFrequency(w.spin)),
 			Reflection: report.Pair(r.Reflection), Transmission: report.Pair(r.Transmission),
 			Greybody: report.Number(r.Greybody), Separation: report.Number(r.Separation),
+			FromInfinity: &report.Scattering{Reflection: report.Pair(reflected), Transmission: report.Pair(transmitted)},
 		}
 		if w.mass > 0 {
 			hertz := report.Number(x / (2 * math.Pi * w.mass * constants.SolarMassSeconds))

@@ -27,10 +27,10 @@ func echoCommand() *cli.Command {
 			"--law constant,reflectivity=0.7; without it all are shown, with the values that stand\n" +
 			"in the result.",
 		Flags: append([]cli.Flag{
-			&cli.Float64Flag{Name: "mass", Usage: "detector-frame mass in solar masses"},
-			&cli.Float64Flag{Name: "spin", Usage: "dimensionless spin"},
+			&cli.Float64Flag{Name: "mass", DefaultText: "must be given", Usage: "detector-frame mass in solar masses"},
+			&cli.Float64Flag{Name: "spin", DefaultText: "must be given", Usage: "dimensionless spin"},
 			&cli.Float64Flag{Name: "offset", Usage: "log10 of the surface's proper distance from the would-be horizon in Planck lengths"},
-			&cli.Float64Flag{Name: "gap", Usage: "r0/r+ - 1 of the surface, instead of --offset"},
+			&cli.Float64Flag{Name: "gap", DefaultText: "none", Usage: "r0/r+ - 1 of the surface, instead of --offset"},
 			&cli.IntFlag{Name: "l", Value: 2, Usage: "polar number"},
 			&cli.IntFlag{Name: "m", Value: 2, Usage: "azimuthal number"},
 			&cli.IntFlag{Name: "n", Value: 0, Usage: "overtone of the mode"},

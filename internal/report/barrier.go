@@ -74,7 +74,7 @@ func BarrierTable(out io.Writer, d *BarrierDocument) error {
 		}
 		size := cmplx.Abs(joined(p.Reflection))
 		g.rows = append(g.rows, append(row,
-			fmt.Sprintf("%.10f", float64(p.Reflection[0])), fmt.Sprintf("%+.10fi", float64(p.Reflection[1])),
+			fmt.Sprintf("%.9e", float64(p.Reflection[0])), fmt.Sprintf("%+.9ei", float64(p.Reflection[1])),
 			fmt.Sprintf("%.6e", float64(p.Transmission[0])), fmt.Sprintf("%+.6ei", float64(p.Transmission[1])),
 			fmt.Sprintf("%.8f", size*size), fmt.Sprintf("%.8e", float64(p.Greybody)),
 			fmt.Sprintf("%.8f", float64(p.Separation))))

@@ -61,7 +61,7 @@ func BarrierPicture(d *BarrierDocument, line []BarrierPoint) Picture {
 	subtitle := "waves from the horizon side; time dependence exp(-iωt)"
 	if d.Mass != nil {
 		x.label = "frequency in the detector frame (Hz)"
-		if scale := hertzPerOmega(d); scale > 0 {
+		if scale := hertzPerOmega(d); scale > 0 && !math.IsInf(scale, 0) {
 			edge *= scale
 			subtitle += fmt.Sprintf("; %.6g solar masses, Mω = 0.1 at %.4g Hz", float64(*d.Mass), 0.1*scale)
 		}
@@ -90,16 +90,16 @@ func BarrierPicture(d *BarrierDocument, line []BarrierPoint) Picture {
 	solid, dashed := lineStyle(0), lineStyle(1)
 	faint := lineStyle(2)
 	edgeStyle := draw.LineStyle{Color: grey, Width: 0.8, Dashes: []vg.Length{3, 2}}
-	bandText := ""
-	for i, panel := range p.panels {
-		if edge != 0 {
+	// The band, if the picture reaches it.
+	banded := max(0, edge) > x.low && min(0, edge) < x.high && edge != 0
+	for _, panel := range p.panels {
+		if banded {
 			panel.Add(band{low: min(0, edge), high: max(0, edge), color: tint}, rules{})
 			m := mark{at: edge, style: edgeStyle}
-			if i == 0 {
-				m.text = "ω = mΩ of the horizon"
+			if panel == reflected {
+				m.text, panel.names = "ω = mΩ of the horizon", true
 			}
 			panel.Add(m)
-			bandText = "waves amplified"
 		}
 	}
 	reflected.Add(
@@ -121,10 +121,11 @@ func BarrierPicture(d *BarrierDocument, line []BarrierPoint) Picture {
 	p.legend = []legendEntry{
 		{text: "|R|² reflected; phase of R", line: solid},
 		{text: "greybody factor 1 - |R|²", line: faint},
-		{text: "|R|² - 1, amplified", line: dashed},
 	}
-	if bandText != "" {
-		p.legend = append(p.legend, legendEntry{text: bandText, area: tint})
+	if banded {
+		p.legend = append(p.legend,
+			legendEntry{text: "|R|² - 1, amplified", line: dashed},
+			legendEntry{text: "waves amplified", area: tint})
 	}
 	if len(points.x) > 0 {
 		glyph := dot(draw.LineStyle{Color: ink})

@@ -43,11 +43,12 @@ func EchoPicture(d *EchoDocument, curves *EchoCurves) Picture {
 		axis{label: "frequency in the detector frame (Hz)", low: xLow, high: xHigh},
 		axis{label: "amplitude per echo |q|", low: low, high: 2 * high, log: true})
 	growing := band{low: 1, high: math.Inf(1), across: true, color: tint}
+	byFrequency.names = true
 	byFrequency.Add(growing, rules{})
 	thin := draw.LineStyle{Color: grey, Width: 0.8, Dashes: []vg.Length{3, 2}}
 	for _, m := range []mark{
-		{at: float64(d.AmplifiedBelow), text: "mΩ of the horizon", style: thin},
-		{at: float64(d.Mode.Frequency), text: fmt.Sprintf("mode (%d,%d,%d)", d.L, d.M, d.N), row: 1, style: thin},
+		{at: float64(d.AmplifiedBelow), text: "mΩ of the horizon", left: float64(d.AmplifiedBelow) < float64(d.Mode.Frequency), style: thin},
+		{at: float64(d.Mode.Frequency), text: fmt.Sprintf("mode (%d,%d,%d)", d.L, d.M, d.N), left: float64(d.AmplifiedBelow) >= float64(d.Mode.Frequency), style: thin},
 	} {
 		if m.at > 0 {
 			byFrequency.Add(m)

@@ -48,6 +48,7 @@ const (
 	panelHeight = 190
 	pageMargin  = 12
 	panelGap    = 10
+	nameStrip   = 11
 	titleSize   = 13
 	labelSize   = 10
 	smallSize   = 9
@@ -89,12 +90,13 @@ type axis struct {
 type panel struct {
 	*plot.Plot
 	label string
+	names bool // marks have names, for which there must be room above
 }
 
 // newPanel returns an empty panel. A range that is not finite, or empty, is widened:
 // what a picture shows may be anything that a command can compute.
 func newPanel(x, y axis) *panel {
-	p := &panel{plot.New(), y.label}
+	p := &panel{Plot: plot.New(), label: y.label}
 	y.label = ""
 	p.BackgroundColor = nil
 	for _, side := range []struct {
@@ -185,6 +187,9 @@ func (p *page) drawPanels(c draw.Canvas) {
 			Min: vg.Point{X: inner.Min.X - c.Min.X, Y: inner.Min.Y - c.Min.Y},
 			Max: vg.Point{X: c.Max.X - inner.Max.X, Y: c.Max.Y - inner.Max.Y},
 		}
+		if panel.names {
+			around[i].Max.Y += nameStrip
+		}
 		left, right = max(left, around[i].Min.X), max(right, around[i].Max.X)
 		used += around[i].Min.Y + around[i].Max.Y
 	}
@@ -195,6 +200,9 @@ func (p *page) drawPanels(c draw.Canvas) {
 		at := c
 		at.Min = vg.Point{X: c.Min.X + left - around[i].Min.X, Y: bottom}
 		at.Max = vg.Point{X: c.Max.X - right + around[i].Max.X, Y: top}
+		if panel.names {
+			at.Max.Y -= nameStrip
+		}
 		panel.Draw(at)
 		label := letters(labelSize, ink)
 		label.Rotation, label.XAlign, label.YAlign = math.Pi/2, draw.XCenter, draw.YTop

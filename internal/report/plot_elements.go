@@ -116,40 +116,34 @@ func (b band) Plot(c draw.Canvas, p *plot.Plot) {
 	c.FillPolygon(b.color, []vg.Point{{X: x0, Y: y0}, {X: x1, Y: y0}, {X: x1, Y: y1}, {X: x0, Y: y1}})
 }
 
-// mark is a line across the panel at one x (at one y if across is set) with its name
-// beside its end.
+// mark is a line across the panel at one x with its name above the frame, in the strip
+// that page keeps free for it: beginning at the line, or ending there if left is set,
+// so that the names of two near lines stand apart.
 type mark struct {
-	at     float64
-	across bool
-	text   string
-	row    int // of the text, counted from the top, so that two names can stand apart
-	style  draw.LineStyle
+	at    float64
+	text  string
+	left  bool
+	style draw.LineStyle
 }
 
 func (m mark) Plot(c draw.Canvas, p *plot.Plot) {
-	a := p.X
-	if m.across {
-		a = p.Y
+	if !(m.at >= p.X.Min && m.at <= p.X.Max) {
+		return
 	}
-	if !(m.at >= a.Min && m.at <= a.Max) {
+	x := c.X(p.X.Norm(m.at))
+	c.StrokeLine2(m.style, x, c.Min.Y, x, c.Max.Y)
+	if m.text == "" {
 		return
 	}
 	style := letters(smallSize, m.style.Color)
-	if m.across {
-		y := c.Y(a.Norm(m.at))
-		c.StrokeLine2(m.style, c.Min.X, y, c.Max.X, y)
-		style.XAlign = draw.XRight
-		c.FillText(style, vg.Point{X: c.Max.X - 3, Y: y + 3}, m.text)
-		return
+	width := style.Width(m.text)
+	begin := x - 2
+	if m.left {
+		begin = x - width + 2
 	}
-	x := c.X(a.Norm(m.at))
-	c.StrokeLine2(m.style, x, c.Min.Y, x, c.Max.Y)
-	// On the side where there is room.
-	at := vg.Point{X: x + 3, Y: c.Max.Y - vg.Length(m.row+1)*(smallSize+2)}
-	if x+3+style.Width(m.text) > c.Max.X {
-		style.XAlign, at.X = draw.XRight, x-3
-	}
-	c.FillText(style, at, m.text)
+	// Inside the frame's width as far as the name fits.
+	begin = max(min(begin, c.Max.X-width), c.Min.X)
+	c.FillText(style, vg.Point{X: begin, Y: c.Max.Y + 3}, m.text)
 }
 
 // extent returns the smallest and largest of the values that pass.
