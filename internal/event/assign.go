@@ -53,10 +53,14 @@ func (d *decoder) assign(h *Hypothesis, t *table, c *Config, shared, own map[str
 			}
 			prior = NamedPrior{fixed, t.path}
 		default:
-			d.fail("prior."+p.Name, "nothing", fmt.Sprintf("a prior for %s (%s), which hypothesis %q needs", p.Name, p.Note, h.Name))
+			key := p.Name
+			if family != p.Name {
+				key += " or, for all of its kind, " + family
+			}
+			d.fail("prior."+p.Name, "nothing", fmt.Sprintf("a prior for %s (%s), which hypothesis %q needs", key, p.Note, h.Name))
 			return
 		}
-		if p.Name == "start_time" {
+		if p.Name == "start_time" || family == "time" {
 			// Earlier, the signal would wrap around to the segment's end.
 			a := c.Analysis
 			first, last := a.Start-a.Gate, a.Start+a.Duration-a.Gate

@@ -34,8 +34,10 @@ func newHypothesis(h Hypothesis, c *Config, g *likelihood.Gaussian) (*hypothesis
 	settings := modelSettings(h, c)
 	// A signal that is known to begin in the gate may rise in what of the gate lies
 	// before. One whose start is free may begin after it, where a rise would be seen.
-	if low, high := h.Priors["start_time"].Prior.Support(); low == high && high <= c.Analysis.Start {
-		settings.Lead = c.Analysis.Gate - (c.Analysis.Start - high)
+	if start, ok := h.Priors["start_time"]; ok {
+		if low, high := start.Prior.Support(); low == high && high <= c.Analysis.Start {
+			settings.Lead = c.Analysis.Gate - (c.Analysis.Start - high)
+		}
 	}
 	model, err := models.New(settings)
 	if err != nil {
