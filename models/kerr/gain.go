@@ -21,7 +21,7 @@ import (
 // mΩ_H) and even further out (t = 1, ω = 0). Being polynomials they also continue
 // ln R to complex ω near the band.
 //
-// Against the direct route |R|² - 1 is good to 1e-6 of itself (1e-7 for l = 2) and
+// Against the direct route |R|² - 1 is good to 1e-6 of itself (2e-7 for l = 2) and
 // arg R to 1e-6 rad: see TestGainTable.
 const (
 	gainSpins  = 36

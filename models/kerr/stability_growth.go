@@ -14,7 +14,8 @@ import (
 // with x0 the surface's tortoise coordinate, φ = phase that of the surface and
 // reflectivity |Rs|. Fields go as exp(-iωt), so the mode's amplitude grows e-fold in
 // 1/Im ω (in M). growing is false, and ω 0, if no mode in the superradiant band
-// grows, even where the loop gain exceeds 1 between two modes.
+// grows, even where the loop gain exceeds 1 between two modes. For m < 0 the band, and
+// with it Re ω, is negative; φ is the phase at those frequencies.
 //
 // To lowest order the modes are the real ω_n at which a round trip closes, arg q =
 // 2πn, and each round trip, of duration τ = d(arg q)/dω, multiplies the wave by |q|:
@@ -126,6 +127,9 @@ func (c *cavity) lnQ(omega complex128) (lnq, slope complex128) {
 	at := max(p, step) // stay on the band's side of k = 0, where a law may have a corner
 	lnRs := math.Log(math.Abs(c.reflectivity(-c.side * p)))
 	rsSlope := math.Log(math.Abs(c.reflectivity(-c.side*(at-step))/c.reflectivity(-c.side*(at+step)))) / (2 * step)
+	if math.IsNaN(rsSlope) || math.IsInf(rsSlope, 0) {
+		rsSlope = 0 // a surface that does not reflect here; lnRs says so
+	}
 	k := omega - complex(c.turn, 0)
 	lnq = r + complex(lnRs, c.phase) - complex(0, 2*c.x0)*k
 	slope += complex(rsSlope, -2*c.x0)

@@ -336,6 +336,17 @@ func TestFastestGrowthStable(t *testing.T) {
 			t.Errorf("%s: ω = %g, growing %v, error %v", tc.why, omega, growing, err)
 		}
 	}
+	// A law that ends in the middle of the band, below the fastest mode.
+	all, _ := fastestGrowth(t, 2, 2, Odd, 0.9, -400, 0.4, constantLaw(1))
+	upper, _ := fastestGrowth(t, 2, 2, Odd, 0.9, -400, 0.4, func(k float64) float64 {
+		if k < -0.2 {
+			return 0
+		}
+		return 1
+	})
+	if all != upper || all == 0 {
+		t.Errorf("ω = %g with reflection at |k| < 0.2 only, want %g", upper, all)
+	}
 	if _, _, err := FastestGrowth(2, 2, 5, 0.9, -400, 0, constantLaw(1)); err == nil {
 		t.Error("parity 5: no error")
 	}
