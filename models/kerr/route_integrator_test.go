@@ -21,7 +21,7 @@ func (a wave) plus(h complex128, b wave) wave {
 	return wave{a.x + h*b.x, a.slope + h*b.slope, a.lnGap + h*b.lnGap}
 }
 
-// integrate carries X” = -V(r) X from y over a distance in r* by Gragg's midpoint
+// integrate carries d²X/dr*² = -V(r) X from y over a distance in r* by Gragg's midpoint
 // rule with Richardson extrapolation (Numer. Math. 8, 1 (1966)), in steps that
 // adapt to a relative error of 2e-15 each.
 func integrate(spin float64, potential func(r float64) complex128, y wave, distance float64) wave {
@@ -31,6 +31,7 @@ func integrate(spin float64, potential func(r float64) complex128, y wave, dista
 		r := rp + z
 		return wave{y.slope, -potential(r) * y.x, complex((r-rm)/(r*r+a2), 0)}
 	}
+	origin := TortoiseLog(spin, real(y.lnGap))
 	const levels = 9
 	step := math.Copysign(min(0.1, math.Abs(distance)), distance)
 	for done := 0.0; done != distance; {
@@ -61,10 +62,13 @@ func integrate(spin float64, potential func(r float64) complex128, y wave, dista
 			best, other := table[0], table[1]
 			length := 1 / math.Abs(step)
 			size := cmplx.Abs(best.x) + cmplx.Abs(best.slope)/(length+cmplx.Abs(cmplx.Sqrt(potential(rp+math.Exp(real(best.lnGap))))))
-			off := cmplx.Abs(best.x-other.x)/size + cmplx.Abs(best.slope-other.slope)/(size*length) + cmplx.Abs(best.lnGap-other.lnGap)
+			off := cmplx.Abs(best.x-other.x)/size + cmplx.Abs(best.slope-other.slope)/(size*length) + cmplx.Abs(best.lnGap-other.lnGap)/(1+cmplx.Abs(best.lnGap))
 			if off < 2e-15 {
 				y, accepted = best, true
 				done += step
+				// The gap has an exact relation to r*, which stops its drift.
+				rate := real(slope(y).lnGap)
+				y.lnGap += complex(rate*(origin+done-TortoiseLog(spin, real(y.lnGap))), 0)
 				if k < levels-1 {
 					step *= 1.5
 				}

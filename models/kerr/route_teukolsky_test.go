@@ -50,7 +50,7 @@ func jacobiSeparation(l, m, s int, c float64) float64 {
 
 // teukolsky is the radial equation of one spin weight,
 //
-//	Δ² R” + 2(s+1)(r-1) Δ R' + [K² - 2is(r-1)K + (4isωr - λ)Δ] R = 0.
+//	Δ² d²R/dr² + 2(s+1)(r-1) Δ dR/dr + [K² - 2is(r-1)K + (4isωr - λ)Δ] R = 0.
 type teukolsky struct {
 	s, m              int
 	a, w, lambda      float64
@@ -66,7 +66,7 @@ func newTeukolsky(l, m, s int, spin, omega float64) *teukolsky {
 	return t
 }
 
-// potential is V of X” = -V X over r*, X = √(r²+a²) Δ^(s/2) R (ApJ 185, 635 (1973)).
+// potential is V of d²X/dr*² = -V X, X = √(r²+a²) Δ^(s/2) R (ApJ 185, 635 (1973)).
 func (t *teukolsky) potential(r float64) complex128 {
 	s := float64(t.s)
 	q := r*r + t.a*t.a
@@ -219,7 +219,7 @@ func (t *teukolsky) near(outgoing bool, z float64) (value, slope complex128) {
 
 // farGap, middleGap and nearGap are the places r - r+ of the expansion far away,
 // of the change of spin weight and of the expansion at the horizon.
-func (t *teukolsky) farGap() float64  { return (25+max(0, t.lambda)/4)/t.w + 15 }
+func (t *teukolsky) farGap() float64 { return (25+max(0, t.lambda)/4)/t.w + 15 }
 func (t *teukolsky) nearGap() float64 {
 	return t.d * min(0.3, 4/(1+math.Abs(t.kh))) // the series contains (1+x)^(-ikh): farther out it cancels
 }
