@@ -69,9 +69,13 @@ func TestDomainHoldsNumbers(t *testing.T) {
 			h, derived := NewPolarizations(c.s.Grid.Count), make([]float64, len(m.Derived()))
 			rng := random.New(31, "domain", uint64(i))
 			theta := make([]float64, len(m.Parameters()))
-			for range 400 {
+			for n := range 400 {
 				for j, p := range m.Parameters() {
 					theta[j] = draw(p, rng)
+					// Every other time, many ends of the domain at once.
+					if n%2 == 1 && rng.IntN(2) == 0 {
+						theta[j] = []float64{p.Low, p.High}[rng.IntN(2)]
+					}
 				}
 				if err := m.Fill(theta, h); err != nil {
 					t.Fatalf("Fill(%g): %v", theta, err)
@@ -81,6 +85,15 @@ func TestDomainHoldsNumbers(t *testing.T) {
 				}
 				if err := m.Derive(theta, derived); err != nil {
 					t.Fatalf("Derive(%g): %v", theta, err)
+				}
+				for j, d := range m.Derived() {
+					// A surface that never grows loud says so; it must grow later than 0 s.
+					if d.Name == "growth_time" && math.IsInf(derived[j], 1) {
+						derived[j] = 1
+					}
+					if d.Name == "growth_time" && derived[j] <= 0 {
+						t.Fatalf("Derive(%g): growth time %g s", theta, derived[j])
+					}
 				}
 				if err := finite(derived); err != nil {
 					t.Fatalf("Derive(%g): %v", theta, err)

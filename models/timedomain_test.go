@@ -65,6 +65,10 @@ var timeCases = []timeCase{
 		values: remnant(map[string]float64{"offset": 0, "echo_phase": 0.4, "reflectivity": 0.9, "infall_amplitude": 3, "infall_phase": 2, "infall_width": 0.002})},
 	{name: "cavity, infall, Boltzmann", s: Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "boltzmann", Excitation: "infall", Inclination: 0.6},
 		values: remnant(map[string]float64{"offset": 0, "echo_phase": 0.4, "infall_amplitude": 3, "infall_phase": 2, "infall_width": 0.002, "infall_carrier": 0.8}), kink: true},
+	// Without a ringdown nothing comes before one delay after the start.
+	{name: "cavity, infall alone", s: Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "constant", Excitation: "infall", Inclination: 0.6},
+		values: remnant(map[string]float64{"amplitude_220": 0, "offset": 0, "echo_phase": 0.4, "reflectivity": 0.9, "infall_amplitude": 3, "infall_phase": 2, "infall_width": 0.002}),
+		begins: kerr.EchoDelay(0.69, lnDistance(68, 0)) * 68 * constants.SolarMassSeconds},
 	{name: "pulses", s: Settings{Model: "pulses", Modes: []string{"2,2,0"}, Inclination: 0.6},
 		values: remnant(map[string]float64{"pulse_delay": 0.21, "pulse_amplitude": 0.5, "pulse_damping": 0.7, "pulse_turn": math.Pi})},
 	{name: "pulses, rising and turning", s: Settings{Model: "pulses", Modes: []string{"2,2,0", "2,2,1"}, Inclination: 2.2},
