@@ -112,10 +112,16 @@ func geometricSum(qr, qi float64, terms uint) (sr, si float64) {
 	sr = 1
 	pr, pi := qr, qi
 	for b := bits.Len(terms) - 2; b >= 0; b-- {
+		odd := terms>>b&1 == 1
 		sr, si = sr+sr*pr-si*pi, si+sr*pi+si*pr
-		pr, pi = pr*pr-pi*pi, 2*pr*pi
-		if terms>>b&1 == 1 {
+		if odd {
 			sr, si = 1+sr*qr-si*qi, sr*qi+si*qr
+		}
+		if b == 0 {
+			break
+		}
+		pr, pi = pr*pr-pi*pi, 2*pr*pi
+		if odd {
 			pr, pi = pr*qr-pi*qi, pr*qi+pi*qr
 		}
 	}
