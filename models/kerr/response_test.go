@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"math/cmplx"
+	"strings"
 	"testing"
 
 	"knell/internal/checktable"
@@ -118,18 +119,90 @@ func TestResponseIsContinuous(t *testing.T) {
 	}
 }
 
+// TestBarrierResponseRange asks outside the domain, and at its corners.
 func TestBarrierResponseRange(t *testing.T) {
 	for _, tc := range []struct {
 		l, m        int
 		spin, omega float64
 		parity      Parity
+		want        string
 	}{
-		{1, 0, 0.5, 0.3, Odd}, {9, 0, 0.5, 0.3, Odd}, {2, 3, 0.5, 0.3, Odd}, {2, 2, 0.999, 0.3, Odd},
-		{2, 2, math.NaN(), 0.3, Odd}, {2, 2, 0.5, 3.1, Odd}, {2, 2, 0.5, math.NaN(), Odd}, {2, 2, 0.5, 0.3, 7},
+		{1, 0, 0.5, 0.3, Odd, "l = 1, want 2 to 8"},
+		{9, 0, 0.5, 0.3, Odd, "l = 9, want 2 to 8"},
+		{2, 3, 0.5, 0.3, Odd, "m = 3, want -2 to 2"},
+		{2, 2, 0.999, 0.3, Odd, "spin = 0.999, want 0 to 0.998"},
+		{2, 2, -0.1, 0.3, Odd, "spin = -0.1, want 0 to 0.998"},
+		{2, 2, math.NaN(), 0.3, Odd, "spin = NaN, want 0 to 0.998"},
+		{2, 2, 0.5, 3.1, Odd, "Mω = 3.1, want -3 to 3"},
+		{2, 2, 0.5, math.Inf(-1), Odd, "Mω = -Inf, want -3 to 3"},
+		{2, 2, 0.5, math.NaN(), Odd, "Mω = NaN, want -3 to 3"},
+		{2, 2, 0.5, 0.3, 7, "parity 7, want Odd (0) or Even (1)"},
 	} {
-		if _, err := BarrierResponse(tc.l, tc.m, tc.spin, tc.omega, tc.parity); err == nil {
-			t.Errorf("%+v: no error", tc)
+		if _, err := BarrierResponse(tc.l, tc.m, tc.spin, tc.omega, tc.parity); err == nil || !strings.Contains(err.Error(), tc.want) {
+			t.Errorf("%+v: error %v", tc, err)
 		}
+	}
+	for _, l := range []int{2, 8} {
+		for _, m := range []int{-l, 0, l} {
+			for _, spin := range []float64{0, math.SmallestNonzeroFloat64, 1e-9, MaxSpin} {
+				for _, omega := range []float64{0, math.SmallestNonzeroFloat64, 1e-12, 1e-3, min(MaxFrequency, float64(l)*HorizonFrequency(spin)), MaxFrequency, -MaxFrequency} {
+					r, err := BarrierResponse(l, m, spin, omega, Even)
+					if err != nil {
+						t.Error(err)
+						continue
+					}
+					far, through := r.FromInfinity()
+					for _, z := range []complex128{r.Reflection, r.Transmission, far, through, complex(r.Greybody, r.Separation)} {
+						if cmplx.IsNaN(z) || cmplx.IsInf(z) {
+							t.Errorf("(%d,%d) a=%g ω=%g: %+v", l, m, spin, omega, r)
+						}
+					}
+				}
+			}
+		}
+	}
+}
+
+// TestDeepPath holds the two paths to Cin together where both know it, |R| from
+// 0.2 down to 1e-2.
+func TestDeepPath(t *testing.T) {
+	compared := 0
+	for _, spin := range []float64{0, 0.4, 0.8, 0.95} {
+		for l := 2; l <= 4; l++ {
+			for _, m := range []int{-l, -1, 1, l} {
+				for omega := 0.3; omega < 2; omega += 0.0517 {
+					h, err := newHarmonic(l, m, complex(spin*omega, 0))
+					if err != nil {
+						t.Fatal(err)
+					}
+					b := newBackground(m, spin, omega, real(h.separation))
+					res, err := respond(m, spin, omega, real(h.separation), Odd)
+					if err != nil {
+						t.Fatal(err)
+					}
+					if size := cmplx.Abs(res.Reflection); size > 0.2 || size < 0.01 {
+						continue
+					}
+					_, axis, err := b.upgoing()
+					if err != nil {
+						t.Fatal(err)
+					}
+					deep, err := b.deep()
+					if err != nil {
+						t.Fatal(err)
+					}
+					// Of 1 the path on the axis knows R to 2e-12 at kh = 16, the
+					// most here: see needsDeep.
+					if off := offBy(axis, deep) * cmplx.Abs(res.Reflection); off > 2e-12 {
+						t.Errorf("(%d,%d) a=%g ω=%g: the paths differ by %.1e of 1", l, m, spin, omega, off)
+					}
+					compared++
+				}
+			}
+		}
+	}
+	if compared < 100 {
+		t.Errorf("%d points compared, want 100 or more", compared)
 	}
 }
 
