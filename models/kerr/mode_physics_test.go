@@ -11,12 +11,23 @@ import (
 	"knell/internal/random"
 )
 
-// TestPhysicsModes compares frequencies with numbers computed at 34 digits by two
-// other methods; see testdata/qnm.csv.
+// independentModes are the rows of qnm.csv and overtones.csv, with their file.
+func independentModes(t *testing.T) (rows []map[string]float64, sources []string) {
+	for _, name := range []string{"qnm.csv", "overtones.csv"} {
+		for _, row := range readTable(t, name) {
+			rows, sources = append(rows, row), append(sources, "testdata/"+name)
+		}
+	}
+	return rows, sources
+}
+
+// TestPhysicsModes compares frequencies with numbers computed at 34 to 110 digits
+// by two other methods; see testdata/qnm.csv and testdata/overtones.csv.
 func TestPhysicsModes(t *testing.T) {
-	table := checktable.New(t, "quasi-normal modes Mω against an independent 34-digit calculation")
+	table := checktable.New(t, "quasi-normal modes Mω against independent calculations")
 	worst := -1.0
-	for _, row := range readTable(t, "qnm.csv") {
+	rows, sources := independentModes(t)
+	for i, row := range rows {
 		l, m, n, spin := int(row["l"]), int(row["m"]), int(row["n"]), row["a"]
 		want := complex(row["re_omega"], row["im_omega"])
 		got, err := QuasiNormalMode(l, m, n, spin)
@@ -24,7 +35,7 @@ func TestPhysicsModes(t *testing.T) {
 			t.Error(err)
 			continue
 		}
-		table.Complex(fmt.Sprintf("Mω (%d,%d,%d) spin %g", l, m, n, spin), got.Omega, want, 1e-13, "testdata/qnm.csv")
+		table.Complex(fmt.Sprintf("Mω (%d,%d,%d) spin %g", l, m, n, spin), got.Omega, want, 1e-13, sources[i])
 		tabulated, err := TabulatedMode(l, m, n, spin)
 		if err != nil {
 			t.Error(err)
@@ -32,15 +43,16 @@ func TestPhysicsModes(t *testing.T) {
 		}
 		worst = max(worst, cmplx.Abs(tabulated.Omega/want-1))
 	}
-	table.Worst("Mω from the embedded table, relative", worst, 1e-11, "testdata/qnm.csv")
+	table.Worst("Mω from the embedded table, relative", worst, 1e-11, "both files")
 }
 
 // TestPhysicsSeparationConstants does the same for A, by three roads: the
 // continued fraction, the table, and the eigenvalue of the spectral matrix.
 func TestPhysicsSeparationConstants(t *testing.T) {
-	table := checktable.New(t, "separation constants against an independent 34-digit calculation")
+	table := checktable.New(t, "separation constants against independent calculations")
 	worst, spectral := -1.0, -1.0
-	for _, row := range readTable(t, "qnm.csv") {
+	rows, sources := independentModes(t)
+	for i, row := range rows {
 		l, m, n, spin := int(row["l"]), int(row["m"]), int(row["n"]), row["a"]
 		want := complex(row["re_A"], row["im_A"])
 		got, err := QuasiNormalMode(l, m, n, spin)
@@ -48,7 +60,7 @@ func TestPhysicsSeparationConstants(t *testing.T) {
 			t.Error(err)
 			continue
 		}
-		table.Complex(fmt.Sprintf("A (%d,%d,%d) spin %g", l, m, n, spin), got.Separation, want, 1e-12, "testdata/qnm.csv")
+		table.Complex(fmt.Sprintf("A (%d,%d,%d) spin %g", l, m, n, spin), got.Separation, want, 1e-12, sources[i])
 		tabulated, err := TabulatedMode(l, m, n, spin)
 		if err != nil {
 			t.Error(err)
@@ -62,8 +74,8 @@ func TestPhysicsSeparationConstants(t *testing.T) {
 		}
 		spectral = max(spectral, cmplx.Abs(h.separation/want-1))
 	}
-	table.Worst("A from the embedded table, relative", worst, 1e-11, "testdata/qnm.csv")
-	table.Worst("A as a spectral eigenvalue, relative", spectral, 1e-12, "testdata/qnm.csv")
+	table.Worst("A from the embedded table, relative", worst, 1e-11, "both files")
+	table.Worst("A as a spectral eigenvalue, relative", spectral, 1e-12, "both files")
 }
 
 // TestPhysicsPrintedModes compares with the printed table of Proc. R. Soc. A 402,
