@@ -11,12 +11,19 @@
 //
 //  1. radial.go and angular.go hold the two continued fractions whose common
 //     zero is a mode; mode.go solves them together at spin 0 from a table of
-//     starting points and follows the root up in spin (QuasiNormalMode).
-//  2. spheroidal.go expands the angular function in functions of the sphere at
+//     starting points and follows the root up in spin, and mode_polish.go does
+//     the last step in 32 digits (QuasiNormalMode, 1e-14 in 1 to 20 ms).
+//  2. modetable_file.go tabulates every mode and its separation constant over
+//     all spins by Chebyshev series on panels that shrink where overtones nearly
+//     meet (WriteModeTable, run by go generate through internal/tabulatemodes in
+//     half a minute); modetable.go embeds the file and evaluates it
+//     (TabulatedMode, 5e-13 in less than 0.1 µs).
+//  3. spheroidal.go expands the angular function in functions of the sphere at
 //     the mode's aω (Spheroidal); its eigenvalue is a second road to the
-//     separation constant.
-//  3. track.go tabulates both over all spins for one polar angle (ModeTrack), so
-//     that a sampler pays less than 0.1 µs per mode and spin.
+//     separation constant. spheroidal_slope.go adds derivatives.
+//  4. track.go joins both for one polar angle over all spins (NewModeTrack, a
+//     millisecond; NewSphericalModeTrack leaves the sphere's functions), so that
+//     a sampler pays less than 0.1 µs per mode and spin (ModeTrack.At).
 //
 // The road of the barrier:
 //
