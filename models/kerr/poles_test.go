@@ -9,8 +9,8 @@ import (
 	"knell/internal/checktable"
 )
 
-// continued is the equation of upgoing.go at complex ω.
-type continued struct {
+// offAxis is the equation of upgoing.go at complex ω.
+type offAxis struct {
 	m             int
 	w, lambda, kh complex128
 	a, rp, rm, d  float64
@@ -26,7 +26,7 @@ func inverseTransmission(t *testing.T, l, m int, spin float64, omega complex128)
 		t.Fatal(err)
 	}
 	am := complex(spin*float64(m), 0)
-	c := &continued{m: m, w: omega, a: spin, rp: HorizonRadius(spin), rm: InnerHorizonRadius(spin), d: 2 * rootOfDeficit(spin)}
+	c := &offAxis{m: m, w: omega, a: spin, rp: HorizonRadius(spin), rm: InnerHorizonRadius(spin), d: 2 * rootOfDeficit(spin)}
 	c.lambda = h.separation + complex(spin*spin, 0)*omega*omega - 2*am*omega
 	c.kh = (complex(2*c.rp, 0)*omega - am) / complex(c.d, 0)
 
@@ -53,7 +53,7 @@ func inverseTransmission(t *testing.T, l, m int, spin float64, omega complex128)
 }
 
 // far sums u = r³ (1 + ...) and its derivative.
-func (c *continued) far(r complex128) (u, du complex128) {
+func (c *offAxis) far(r complex128) (u, du complex128) {
 	a2 := complex(c.a*c.a, 0)
 	side := 2i * complex(c.a, 0) * (complex(c.a, 0)*c.w - complex(float64(c.m), 0))
 	terms := [3]complex128{1, 0, 0}
@@ -73,7 +73,7 @@ func (c *continued) far(r complex128) (u, du complex128) {
 }
 
 // walk carries u and du/dr along a straight line in Taylor steps.
-func (c *continued) walk(from, to, u, du complex128) (complex128, complex128) {
+func (c *offAxis) walk(from, to, u, du complex128) (complex128, complex128) {
 	for z := from; z != to; {
 		left := to - z
 		h := left * complex(min(1, 0.3*cmplx.Abs(z)/cmplx.Abs(left)), 0)
@@ -108,7 +108,7 @@ func (c *continued) walk(from, to, u, du complex128) (complex128, complex128) {
 }
 
 // TestPhysicsPoles finds the poles of T in the complex plane and compares them
-// with the quasi-normal modes, which come from the continued fractions.
+// with the quasi-normal modes, which come from the offAxis fractions.
 func TestPhysicsPoles(t *testing.T) {
 	// On the real axis the continuation is T itself, up to its phase.
 	for _, tc := range []struct {
@@ -148,6 +148,6 @@ func TestPhysicsPoles(t *testing.T) {
 			w0, w1, f0 = w1, w1-f1*(w1-w0)/(f1-f0), f1
 			f1 = at(w1)
 		}
-		table.Complex(fmt.Sprintf("(%d,%d,%d) spin %g", tc.l, tc.m, tc.n, tc.spin), w1, mode.Omega, 1e-12, "QuasiNormalMode, continued fractions")
+		table.Complex(fmt.Sprintf("(%d,%d,%d) spin %g", tc.l, tc.m, tc.n, tc.spin), w1, mode.Omega, 1e-12, "QuasiNormalMode, offAxis fractions")
 	}
 }

@@ -55,11 +55,12 @@ type Response struct {
 // MaxFrequency is the largest |Mω| of BarrierResponse.
 const MaxFrequency = 3.0
 
-// Below smallFrequency in ω, or smallWave in kh, the response is evaluated at
-// those values: R and T are smooth there, and the change is below 1e-8.
+// Below smallFrequency in ω the response is that at smallFrequency: R is smooth,
+// and the change is below 1e-8; T has fallen below 1e-17. At k = 0, where its formulas have a factor 0/0, kh is set
+// to smallWave.
 const (
 	smallFrequency = 1e-9
-	smallWave      = 1e-13
+	smallWave      = 1e-100
 )
 
 // BarrierResponse returns reflection and transmission of the (l, m) wave of

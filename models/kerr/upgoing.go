@@ -91,17 +91,16 @@ const (
 // deep returns Cin of upgoing with its relative accuracy where |Cin| is far
 // below |Cout|. An error of ε in u at the place x is an error of
 // ε exp(-2 Im φ(x)) |Cout| in Cin. Above the real axis Im φ grows, from far away
-// and from the horizon (φ → kh ln x, kh > 0), up to the zeros of K on or near
-// the line Re r = 0, where the faint reflection arises. So the path stays above
-// them: down that line, then to x = 0.4 exp(iθ), where the ingoing wave has grown
+// and from the horizon (φ → kh ln x, kh > 0), and between the two lie the zeros of
+// K on or near the line Re r = 0, where the faint reflection arises. The path goes
+// over that pass, never lower: down the line, then to x = 0.4 exp(iθ), where the ingoing wave has grown
 // by exp(2 kh θ), with θ = π unless that is more than deepReach lets it.
 func (b *background) deep() (in complex128, err error) {
 	x := complex(-matchAt, 0)
 	if theta := deepReach / (2 * b.kh); theta < math.Pi {
 		x = cmplx.Rect(matchAt, theta)
 	}
-	height := math.Sqrt(max(deepHeight*deepHeight, b.a*b.a-b.a*float64(b.m)/b.w))
-	corner, end := complex(-b.rp, height), x*complex(b.d, 0)
+	corner, end := complex(-b.rp, deepHeight), x*complex(b.d, 0)
 	u, du, err := b.descend(corner)
 	if err != nil {
 		return 0, err
