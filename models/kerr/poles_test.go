@@ -108,7 +108,7 @@ func (c *offAxis) walk(from, to, u, du complex128) (complex128, complex128) {
 }
 
 // TestPhysicsPoles finds the poles of T in the complex plane and compares them
-// with the quasi-normal modes, which come from the offAxis fractions.
+// with the quasi-normal modes, which come from the continued fractions.
 func TestPhysicsPoles(t *testing.T) {
 	// On the real axis the continuation is T itself, up to its phase.
 	for _, tc := range []struct {
@@ -148,6 +148,6 @@ func TestPhysicsPoles(t *testing.T) {
 			w0, w1, f0 = w1, w1-f1*(w1-w0)/(f1-f0), f1
 			f1 = at(w1)
 		}
-		table.Complex(fmt.Sprintf("(%d,%d,%d) spin %g", tc.l, tc.m, tc.n, tc.spin), w1, mode.Omega, 1e-12, "QuasiNormalMode, offAxis fractions")
+		table.Complex(fmt.Sprintf("(%d,%d,%d) spin %g", tc.l, tc.m, tc.n, tc.spin), w1, mode.Omega, 1e-12, "QuasiNormalMode, continued fractions")
 	}
 }
