@@ -45,7 +45,7 @@ func describePulses(s Settings) ([]Parameter, error) {
 		Parameter{Name: "spacing_ratio", Note: "time between later copies over that to the first", Low: 1e-3, High: 1e3, Default: 1, HasDefault: true},
 		Parameter{Name: "pulse_amplitude", Note: "amplitude of the first copy over the ringdown's", Low: 0, High: 1e3},
 		Parameter{Name: "pulse_damping", Note: "amplitude of each later copy over the one before", Low: 0, High: 1},
-		Parameter{Name: "pulse_turn", Unit: "rad", Note: "turn of the phase from each copy to the next; pi flips", Low: 0, High: 2 * math.Pi, Default: math.Pi, HasDefault: true},
+		Parameter{Name: "pulse_turn", Unit: "rad", Note: "turn of the phase from each copy to the next; pi flips", Low: 0, High: 2 * math.Pi, Periodic: true, Default: math.Pi, HasDefault: true},
 		Parameter{Name: "pulse_rise", Unit: "s", Note: "time in which a copy rises; 0 begins with a jump", Low: 0, High: maxStart, Default: 0, HasDefault: true},
 	), nil
 }

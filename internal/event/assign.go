@@ -11,8 +11,8 @@ import (
 
 // assign gives every parameter of a hypothesis its prior. In order: the
 // hypothesis's own, the shared one, each by the full name and then by the family
-// ("amplitude" for every amplitude_220); else a whole circle for a periodic
-// parameter; else the model's default as a fixed value; else it is an error.
+// ("amplitude" for every amplitude_220); else the model's default as a fixed
+// value; else a whole circle for a periodic parameter; else it is an error.
 func (d *decoder) assign(h *Hypothesis, t *table, c *Config, shared, own map[string]NamedPrior, used map[string]bool) {
 	list, err := models.Describe(modelSettings(*h, c))
 	if err != nil {
@@ -40,18 +40,18 @@ func (d *decoder) assign(h *Hypothesis, t *table, c *Config, shared, own map[str
 				d.fail(prior.Key, fmt.Sprintf("%v", prior.Prior), fmt.Sprintf("a range within %g to %g for %s of the model %s", p.Low, p.High, p.Name, h.Model))
 				return
 			}
-		case p.Periodic:
-			uniform, err := priors.NewUniform(p.Low, p.High)
-			if err != nil {
-				panic("event: " + err.Error())
-			}
-			prior = NamedPrior{uniform, t.path}
 		case p.HasDefault:
 			fixed, err := priors.NewFixed(p.Default)
 			if err != nil {
 				panic("event: " + err.Error())
 			}
 			prior = NamedPrior{fixed, t.path}
+		case p.Periodic:
+			uniform, err := priors.NewUniform(p.Low, p.High)
+			if err != nil {
+				panic("event: " + err.Error())
+			}
+			prior = NamedPrior{uniform, t.path}
 		default:
 			key := p.Name
 			if family != p.Name {
