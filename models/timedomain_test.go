@@ -28,9 +28,12 @@ type timeCase struct {
 	kink bool
 }
 
-// remnant is what every case below shares.
-func remnant(more map[string]float64) map[string]float64 {
-	values := map[string]float64{"mass": 68, "spin": 0.69, "amplitude_220": 1, "phase_220": 1.1}
+// remnant is what most cases share, one that rings in the mode 2,2,0.
+func remnant(more map[string]float64) map[string]float64 { return other("220", more) }
+
+// other is a remnant that rings in another mode.
+func other(mode string, more map[string]float64) map[string]float64 {
+	values := map[string]float64{"mass": 68, "spin": 0.69, "amplitude_" + mode: 1, "phase_" + mode: 1.1}
 	for name, v := range more {
 		values[name] = v
 	}
@@ -53,6 +56,10 @@ var timeCases = []timeCase{
 		values: remnant(map[string]float64{"amplitude_221": 2, "phase_221": 4, "offset": 10, "echo_phase": 3, "reflectivity": 0.6})},
 	{name: "cavity, Boltzmann", s: Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "boltzmann", Inclination: 0.6},
 		values: remnant(map[string]float64{"offset": 0, "echo_phase": 0.4, "reflectivity": 1, "temperature": 1}), kink: true},
+	{name: "cavity without spin", s: Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "constant", Inclination: 0.6},
+		values: remnant(map[string]float64{"spin": 0, "offset": 0, "echo_phase": 0.4, "reflectivity": 0.9})},
+	{name: "cavity, fast and light", s: Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "constant", Inclination: 0.6},
+		values: remnant(map[string]float64{"mass": 31, "spin": 0.95, "offset": 5, "echo_phase": 4, "reflectivity": 0.9})},
 	{name: "cavity, membrane", s: Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "membrane", Inclination: 0.6},
 		values: remnant(map[string]float64{"offset": 0, "echo_phase": 0.4, "viscosity": 0.2})},
 	{name: "cavity, power", s: Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "power", Inclination: 0.6},
