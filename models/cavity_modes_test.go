@@ -275,3 +275,25 @@ func TestCavityClonesAreIndependent(t *testing.T) {
 		<-done
 	}
 }
+
+// What a user got wrong is said with key, what was found and what is accepted.
+func TestCavityComplains(t *testing.T) {
+	good := Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "constant", Grid: Grid{First: 60, Count: 10, Step: 1}, Length: 1}
+	for _, tc := range []struct {
+		change func(*Settings)
+		want   SettingError
+	}{
+		{func(s *Settings) { s.Excitation = "hammer" }, SettingError{"excitation", `"hammer"`, `"barrier", "source" or "infall"`}},
+		{func(s *Settings) { s.Angular = "flat" }, SettingError{"angular", `"flat"`, `"spheroidal" or "spherical"`}},
+		{func(s *Settings) { s.Parity = "both" }, SettingError{"parity", `"both"`, `"odd" or "even"`}},
+		{func(s *Settings) { s.Reflectivity = "mirror" }, SettingError{"reflectivity", `"mirror"`, "one of constant, boltzmann, membrane, power, lorentzian"}},
+	} {
+		s := good
+		tc.change(&s)
+		_, err := New(s)
+		got, ok := err.(*SettingError)
+		if !ok || *got != tc.want {
+			t.Errorf("%v, want %v", err, &tc.want)
+		}
+	}
+}

@@ -1,7 +1,5 @@
 package models
 
-import "strconv"
-
 // Ringdown is the remnant with a horizon: a sum of Kerr quasi-normal modes that
 // begin at start_time.
 //
@@ -18,15 +16,6 @@ type Ringdown struct {
 var _ Model = (*Ringdown)(nil)
 
 func describeRingdown(s Settings) ([]Parameter, error) {
-	if s.Reflectivity != "" {
-		return nil, &SettingError{"reflectivity", strconv.Quote(s.Reflectivity), "no such key: a ringdown has a horizon"}
-	}
-	if s.Parity != "" {
-		return nil, &SettingError{"parity", strconv.Quote(s.Parity), "no such key: a ringdown has no cavity"}
-	}
-	if s.Excitation != "" {
-		return nil, &SettingError{"excitation", strconv.Quote(s.Excitation), "no such key: a ringdown has no cavity"}
-	}
 	if _, err := checkAngular(s.Angular); err != nil {
 		return nil, err
 	}
