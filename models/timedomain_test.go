@@ -288,3 +288,31 @@ func TestPhysicsNoWrapAround(t *testing.T) {
 		table.Absolute(name, worst/largestOf(short), 0, 1e-6, "a signal that ends within the segment")
 	}
 }
+
+// A segment twice as long with data twice as long has more echoes, and the same signal
+// before them. An echo has no sharp beginning: frequencies that turn back below the
+// barrier's top come before the delay that the light ring gives, so the comparison ends
+// 200 M before the first echo that the shorter data leave out.
+func TestPhysicsLongerDataChangeNothingBefore(t *testing.T) {
+	const short, long = 1.5, 3.5 // s of data in 2 s and 4 s
+	table := checktable.New(t, "change of the first 1.5 s when segment and data are 2 s longer, over the peak")
+	for _, c := range timeCases {
+		filter := c.notch(t)
+		a, b := timeSeries(t, c, 2, short, filter), timeSeries(t, c, 4, long, filter)
+		end := short
+		if c.s.Model == "cavity" {
+			delay := kerr.EchoDelay(c.values["spin"], lnDistance(c.values["mass"], c.values["offset"])) * c.values["mass"] * constants.SolarMassSeconds
+			end = math.Min(end, (math.Floor(short/delay)+1)*delay-200*c.values["mass"]*constants.SolarMassSeconds)
+		}
+		if stretch := math.Abs(c.values["line_stretch"]); stretch > 0 {
+			// Of the first pulse whose slowest part comes too late, the fastest.
+			spacing, delay := 1/c.values["line_spacing"], c.values["comb_delay"]
+			end = math.Min(end, delay+(math.Floor((short-delay)/(spacing*(1+stretch)))+1)*spacing*(1-stretch))
+		}
+		worst := 0.0
+		for i := range int(end * timeRate) {
+			worst = max(worst, cmplx.Abs(a[i]-b[i]))
+		}
+		table.Absolute(c.name, worst/largestOf(a), 0, 1e-6, "echoes come in their order")
+	}
+}
