@@ -216,7 +216,7 @@ def respond(l, m, a, w):
 
 
 def points():
-    """Corners by hand, then a spread of the whole domain; the numbers are exact as printed."""
+    """Corners by hand, then a spread of the whole domain, then the edges; a string is exact as printed."""
     spins, omegas = ['0', '0.7', '0.998'], ['0.7', '2']
     for l in (2, 3, 4):
         for m in sorted({-l, -1, 1, l}):
@@ -233,6 +233,19 @@ def points():
         yield l, m, a, w
     for l, m, a, w in ((4, 4, '0.998', '3'), (4, -4, '0.998', '3'), (2, 2, '0', '3'), (3, 3, '0.95', '2.5'), (8, 8, '0.998', '3'), (8, -8, '0.998', '3')):
         yield l, m, a, w
+    # Beside the edge of the superradiant band and at low frequency. There the printed digits are those of a double, whose
+    # exact value is what is computed: k is a small difference.
+    rng = random.Random(9)
+    for i in range(36):
+        l = rng.choice((2, 3, 4))
+        m = rng.randint(1, l)
+        a = float('%.4f' % min(0.998, 1 - 10 ** rng.uniform(-2.7, 0)))
+        e = 10 ** rng.uniform(-10, -1) * rng.choice((1, -1))
+        w = float(m * a / (2 * (1 + (1 - a * a) ** .5)) * (1 + e))
+        if i % 3 == 0:
+            m = rng.choice((-l, 0, l))
+            w = float('%.3g' % (10 ** rng.uniform(-3, -2)))
+        yield l, m, a, w
 
 
 if __name__ == '__main__':
@@ -242,4 +255,4 @@ if __name__ == '__main__':
     for l, m, a, w in points():
         A, R, T, grey, flux = respond(l, m, a, w)
         n = lambda v: nstr(v, 20)
-        print(','.join([str(l), str(m), a, w, n(A), n(R.real), n(R.imag), n(T.real), n(T.imag), n(grey), nstr(flux, 3)]), flush=True)
+        print(','.join([str(l), str(m), str(a), str(w), n(A), n(R.real), n(R.imag), n(T.real), n(T.imag), n(grey), nstr(flux, 3)]), flush=True)
