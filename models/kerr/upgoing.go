@@ -93,8 +93,9 @@ const (
 // ε exp(-2 Im φ(x)) |Cout| in Cin. Above the real axis Im φ grows, from far away
 // and from the horizon (φ → kh ln x, kh > 0), and between the two lie the zeros of
 // K on or near the line Re r = 0, where the faint reflection arises. The path goes
-// over that pass, never lower: down the line, then to x = 0.4 exp(iθ), where the ingoing wave has grown
-// by exp(2 kh θ), with θ = π unless that is more than deepReach lets it.
+// over that pass, never lower: down the line, then to x = 0.4 exp(iθ), where the
+// ingoing wave has grown by exp(2 kh θ), with θ = π unless that is more than
+// deepReach lets it.
 func (b *background) deep() (in complex128, err error) {
 	x := complex(-matchAt, 0)
 	if theta := deepReach / (2 * b.kh); theta < math.Pi {
