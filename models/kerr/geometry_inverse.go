@@ -16,7 +16,7 @@ func InverseTortoise(spin, rStar float64) float64 {
 	// Nearer than D the coordinate is a straight line in lnGap; beyond, it is
 	// steep in it, so the rounding of lnGap must not pass through exp.
 	near := rStar < tortoise(rp, d, d, math.Log(d))
-	low, high, last := math.Inf(-1), math.Inf(1), math.Inf(1)
+	low, high := math.Inf(-1), math.Inf(1)
 	for range 100 {
 		off := tortoise(rp, d, gap, y) - rStar
 		if off > 0 {
@@ -37,11 +37,9 @@ func InverseTortoise(spin, rStar float64) float64 {
 			gap *= math.Exp(step)
 			y = math.Log(gap)
 		}
-		change := math.Abs(step)
-		if !(change > 0x1p-53*max(1, math.Abs(y))) || change < 1e-9 && change >= last {
-			break // settled, or turning round in the rounding of r*
+		if math.Abs(step) < 1e-9 {
+			break // the next step would be of the order of its square
 		}
-		last = change
 	}
 	return y
 }
