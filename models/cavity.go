@@ -142,6 +142,16 @@ func (c *Cavity) prepared() (*Cavity, error) {
 		return nil, err
 	}
 	c.groups = groups
+	if c.excitation == fromInfall {
+		// The barrier gets its transmission when first asked; not in Fill.
+		var re, im [1]float64
+		if err := groups[0].barrier.SetSpin(0); err != nil {
+			return nil, err
+		}
+		if err := groups[0].barrier.Transmission(0.5, 1e-3, re[:], im[:]); err != nil {
+			return nil, err
+		}
+	}
 	c.surface = &surface{law: c.law}
 	c.reflectivityAt = c.surface.at
 	n := c.grid.Count
