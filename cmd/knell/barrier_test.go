@@ -199,6 +199,7 @@ func TestFrequencyList(t *testing.T) {
 		// Decimal steps, both ends: no 0.30000000000000004, and no point beyond 2.
 		{[]string{"0.1:0.5:0.1"}, []float64{0.1, 0.2, 0.3, 0.4, 0.5}},
 		{[]string{"1.9:2:0.1"}, []float64{1.9, 2}},
+		{[]string{"0:0.3:0.1"}, []float64{0, 0.1, 0.2, 0.3}}, // 0.3/0.1 is below 3
 		{[]string{"0:1:0.4,7"}, []float64{0, 0.4, 0.8, 7}},
 		{[]string{"-1e-20:1e-20:1e-20"}, []float64{-1e-20, 0, 1e-20}},
 	} {
