@@ -151,3 +151,20 @@ func BenchmarkLightRing(b *testing.B) {
 		sink = LightRing(0.7)
 	}
 }
+
+// TestUnknownPath: another path is a broken contract, not a value.
+func TestUnknownPath(t *testing.T) {
+	for name, call := range map[string]func(){
+		"SurfaceGap":     func() { SurfaceGap(0.5, -90, 2) },
+		"ProperDistance": func() { ProperDistance(0.5, -90, -1) },
+	} {
+		t.Run(name, func(t *testing.T) {
+			defer func() {
+				if recover() == nil {
+					t.Error("no panic")
+				}
+			}()
+			call()
+		})
+	}
+}

@@ -23,7 +23,7 @@ func TestModeTrack(t *testing.T) {
 					t.Error(err)
 					continue
 				}
-				for range 3 {
+				for range 2 {
 					spin := math.Tanh(most * rng.Float64())
 					omega, north, south, err := track.At(spin)
 					if err != nil {
