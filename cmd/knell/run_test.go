@@ -94,13 +94,13 @@ func TestUsageErrors(t *testing.T) {
 }
 
 func TestHelp(t *testing.T) {
-	for _, args := range [][]string{nil, {"--help"}, {"-h"}, {"weigh", "--help"}, {"check", "-h"}, {"modes", "--help"}} {
+	for _, args := range [][]string{nil, {"--help"}, {"-h"}, {"weigh", "--help"}, {"check", "-h"}, {"modes", "--help"}, {"barrier", "--help"}, {"echo", "-h"}} {
 		status, stdout, stderr := knell(t, args...)
 		if status != statusDone || stderr != "" || !strings.Contains(stdout, "USAGE") {
 			t.Errorf("knell %v: status %d, standard error %q, standard output\n%s", args, status, stderr, stdout)
 		}
 		if len(args) < 2 {
-			for _, command := range []string{"weigh", "check", "modes"} {
+			for _, command := range []string{"weigh", "check", "modes", "barrier", "echo"} {
 				if !strings.Contains(stdout, "   "+command+" ") {
 					t.Errorf("knell %v does not list %s", args, command)
 				}

@@ -153,7 +153,7 @@ func TestWeigh(t *testing.T) {
 		t.Fatal(err)
 	}
 	want := []string{"mass", "spin", "start_time", "amplitude_220", "phase_220", "offset", "echo_phase", "reflectivity", "temperature",
-		"frequency_220", "damping_time_220", "echo_delay", "log_likelihood_over_noise", "log_likelihood"}
+		"frequency_220", "damping_time_220", "echo_delay", "growth_time", "log_likelihood_over_noise", "log_likelihood"}
 	if len(rows) < 3 || !sameSet(rows[0], want) {
 		t.Fatalf("%d rows under %v, want columns %v", len(rows), rows[0], want)
 	}
