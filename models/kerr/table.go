@@ -1,167 +1,138 @@
 package kerr
 
 import (
-	"bytes"
-	"encoding/binary"
+	"embed"
 	"fmt"
-	"hash/crc32"
-	"io"
 	"math"
-	"math/cmplx"
+	"sync"
+
+	"knell/models/kerr/internal/chart"
 )
 
-// The file of a table, little endian: tableHeader, then for every row of u >= 0
-// its reach (low, high: float64), then for every row the real parts and the
-// imaginary parts of its points (float32), then the CRC-32 (IEEE) of all before.
-type tableHeader struct {
-	Magic        [8]byte
-	Version      uint32
-	Parity       uint32
-	Rows, Points uint32 // rows of u >= 0
-	MaxSpin      float64
-	Limit        float64
-}
+//go:generate go run ./internal/tabulate
 
-const tableVersion = 1
+//go:embed barrier
+var barrierFiles embed.FS
 
-var tableMagic = [8]byte{'k', 'n', 'e', 'l', 'l', 'B', 'R', 0}
-
-// storedRows counts the rows of a file; those of negative u follow by symmetry.
-const storedRows = tableRows - tableMargin
-
-// reachLevel is the |R| below which the table's users may take R as 0.
-const reachLevel = 1e-8
-
-func headerFor(parity Parity) tableHeader {
-	return tableHeader{Magic: tableMagic, Version: tableVersion, Parity: uint32(parity),
-		Rows: storedRows, Points: tablePoints, MaxSpin: MaxSpin, Limit: tableLimit}
-}
-
-// table is a decoded file with the rows of negative u filled in: row i belongs
-// to u = (i - tableMargin) tableStep. It is shared and never changes.
+// table is a chart made ready for section: polynomials in powers of x, and for
+// even parity with that parity's phase. It is shared and never changes.
 type table struct {
-	low, high [storedRows]float64 // reach by row of u >= 0
-	re, im    [tableRows][tablePoints]float32
-	node      [tableRows][tablePoints]float64 // ω of the points
-	phase     [tableRows][tablePoints]float64 // what was left out, less 2 ω rotorRadius
+	low, high, gap float64
+	panels         []chart.Panel
 }
 
-// WriteBarrierTable computes the table that NewBarrier embeds and writes it to
-// w: l = m = 2, spins 0 to MaxSpin, |Mω| up to 1.7. It is what go generate runs
-// in this package, on one core for some seconds. progress, if not nil, is called
-// after each row.
-func WriteBarrierTable(w io.Writer, parity Parity, progress func(done, total int)) error {
-	if err := parity.check(); err != nil {
-		return err
-	}
-	var reach []float64
-	var points []float32
-	for i := range storedRows {
-		r := newRow(float64(i) * tableStep)
-		var res [tablePoints]complex128
-		first, last := tablePoints, -1
-		frequencies := r.frequencies()
-		for j, omega := range frequencies {
-			v, err := tabulated(r, omega, parity)
-			if err != nil {
-				return err
-			}
-			if cmplx.Abs(v) >= reachLevel {
-				first, last = min(first, j), max(last, j)
-			}
-			res[j] = v * cmplx.Rect(1, -r.phase(omega))
-		}
-		if first == 0 || last == tablePoints-1 {
-			return fmt.Errorf("kerr: at spin %g |R| still exceeds %g at the table's end", r.spin, reachLevel)
-		}
-		reach = append(reach, frequencies[first-1], frequencies[last+1])
-		for _, v := range res {
-			points = append(points, float32(real(v)))
-		}
-		for _, v := range res {
-			points = append(points, float32(imag(v)))
-		}
-		if progress != nil {
-			progress(i+1, storedRows)
-		}
-	}
-	var file bytes.Buffer
-	for _, part := range []any{headerFor(parity), reach, points} {
-		if err := binary.Write(&file, binary.LittleEndian, part); err != nil {
-			return err
-		}
-	}
-	if err := binary.Write(&file, binary.LittleEndian, crc32.ChecksumIEEE(file.Bytes())); err != nil {
-		return err
-	}
-	_, err := w.Write(file.Bytes())
-	return err
+// tableKind is what a table holds.
+type tableKind int
+
+const (
+	oddReflection tableKind = iota
+	evenReflection
+	transmission
+	tableKinds
+)
+
+// tableMaxL is the largest l with tables.
+const tableMaxL = 4
+
+// tables are decoded when first asked for, once. Those of m < 0 are those of
+// -m, by R_l-m(ω) = conj R_lm(-ω).
+var tables [tableKinds][tableMaxL + 1][tableMaxL + 1]struct {
+	once  sync.Once
+	table *table
+	err   error
 }
 
-// tabulated is R at one point. The margin rows lie beyond MaxSpin, so this goes
-// around BarrierResponse's check of the spin.
-func tabulated(r row, omega float64, parity Parity) (complex128, error) {
-	m, w := tableM, omega
-	if omega < 0 {
-		m, w = -m, -w
+// loadTable returns the table of (l, m), m >= 0.
+func loadTable(kind tableKind, l, m int) (*table, error) {
+	t := &tables[kind][l][m]
+	t.once.Do(func() {
+		var file []byte
+		if file, t.err = barrierFiles.ReadFile(tableName(kind, l, m)); t.err == nil {
+			t.table, t.err = newTable(file, kind, l, m)
+		}
+	})
+	return t.table, t.err
+}
+
+// tableName is the file that a table comes from.
+func tableName(kind tableKind, l, m int) string {
+	name := "reflection"
+	if kind == transmission {
+		name = "transmission"
 	}
-	h, err := newHarmonic(2, m, complex(r.spin*w, 0))
+	return fmt.Sprintf("barrier/%s-%d%d.bin", name, l, m)
+}
+
+// newTable decodes the file of a table. A file of something else is an error.
+func newTable(file []byte, kind tableKind, l, m int) (*table, error) {
+	c, err := chart.Decode(file)
 	if err != nil {
-		return 0, err
+		return nil, err
 	}
-	res, err := respond(m, r.spin, w, real(h.separation), parity)
-	if omega < 0 {
-		return cmplx.Conj(res.Reflection), err
+	want := chart.Reflection
+	if kind == transmission {
+		want = chart.Transmission
 	}
-	return res.Reflection, err
+	if c.Kind != want || c.L != l || c.M != m {
+		return nil, fmt.Errorf("kerr: barrier table is of kind %d, (%d,%d), want kind %d, (%d,%d)", c.Kind, c.L, c.M, want, l, m)
+	}
+	end := 0.0
+	for i := range c.Panels {
+		if p := &c.Panels[i]; p.Low != end {
+			return nil, fmt.Errorf("kerr: barrier table (%d,%d) has a panel from %g on, want %g", l, m, p.Low, end)
+		} else {
+			end = p.High
+		}
+	}
+	if end != math.Atanh(MaxSpin) || !(c.Low < c.High) || !(c.Gap >= 0) {
+		return nil, fmt.Errorf("kerr: barrier table (%d,%d) ends at spin %g, want %g", l, m, math.Tanh(end), MaxSpin)
+	}
+	if kind == evenReflection {
+		if err := turnEven(c); err != nil {
+			return nil, err
+		}
+	}
+	for i := range c.Panels {
+		toPowers(&c.Panels[i])
+	}
+	return &table{low: c.Low, high: c.High, gap: c.Gap, panels: c.Panels}, nil
 }
 
-// decodeTable reads a file of WriteBarrierTable. A file of another version,
-// grid or parity, of another length, or with a wrong checksum is an error.
-func decodeTable(file []byte, parity Parity) (*table, error) {
-	var header tableHeader
-	size := binary.Size(header) + storedRows*(2*8+2*4*tablePoints) + 4
-	if len(file) != size {
-		return nil, fmt.Errorf("kerr: barrier table has %d bytes, want %d", len(file), size)
-	}
-	body, sum := file[:size-4], binary.LittleEndian.Uint32(file[size-4:])
-	if got := crc32.ChecksumIEEE(body); got != sum {
-		return nil, fmt.Errorf("kerr: barrier table has checksum %08x, want %08x", got, sum)
-	}
-	read := bytes.NewReader(body)
-	if err := binary.Read(read, binary.LittleEndian, &header); err != nil {
-		return nil, fmt.Errorf("kerr: barrier table: %w", err)
-	}
-	if want := headerFor(parity); header != want {
-		return nil, fmt.Errorf("kerr: barrier table is %+v, want %+v: run go generate", header, want)
-	}
-	t := new(table)
-	at := binary.Size(header)
-	for i := range storedRows {
-		t.low[i] = math.Float64frombits(binary.LittleEndian.Uint64(body[at:]))
-		t.high[i] = math.Float64frombits(binary.LittleEndian.Uint64(body[at+8:]))
-		at += 16
-	}
-	for i := range storedRows {
-		for _, part := range []*[tablePoints]float32{&t.re[i+tableMargin], &t.im[i+tableMargin]} {
-			for j := range part {
-				part[j] = math.Float32frombits(binary.LittleEndian.Uint32(body[at:]))
-				at += 4
+// toPowers turns Chebyshev polynomials in x into powers of x. The coefficients
+// of a piece fall by ten or so from one degree to the next, so no digits go.
+func toPowers(p *chart.Panel) {
+	var power [cellTerms][cellTerms]float64 // T_n = Σ_i power[n][i] xⁱ
+	power[0][0], power[1][1] = 1, 1
+	for n := 2; n < cellTerms; n++ {
+		for i := range cellTerms {
+			power[n][i] = -power[n-2][i]
+			if i > 0 {
+				power[n][i] += 2 * power[n-1][i-1]
 			}
 		}
-		r := newRow(float64(i) * tableStep)
-		t.node[i+tableMargin] = r.frequencies()
-		for j, omega := range t.node[i+tableMargin] {
-			t.phase[i+tableMargin][j] = r.phase(omega) - 2*omega*rotorRadius
+	}
+	// Upwards: the i-th power takes from T_n with n >= i only.
+	for i := range cellTerms {
+		to := p.Planes[i]
+		for n := i; n < cellTerms; n++ {
+			f := power[n][i]
+			if n == i {
+				for j := range to {
+					to[j] *= f
+				}
+				continue
+			}
+			if f == 0 {
+				continue
+			}
+			// A row is the terms of a real or an imaginary part.
+			width, wide := chart.Terms[n], chart.Terms[i]
+			for row := range 2 * p.Pieces {
+				a, b := to[row*wide:], p.Planes[n][row*width:(row+1)*width]
+				for j, v := range b {
+					a[j] += f * v
+				}
+			}
 		}
 	}
-	for i := 1; i <= tableMargin; i++ {
-		from, to := tableMargin+i, tableMargin-i
-		for j := range tablePoints {
-			k := tablePoints - 1 - j
-			t.re[to][j], t.im[to][j] = t.re[from][k], -t.im[from][k]
-			t.node[to][j], t.phase[to][j] = -t.node[from][k], -t.phase[from][k]
-		}
-	}
-	return t, nil
 }
