@@ -15,7 +15,6 @@ import (
 func TestBendsAreStraight(t *testing.T) {
 	for _, mode := range []string{"2,2,0", "3,3,0", "2,-2,0", "2,0,0"} {
 		t.Run(mode, func(t *testing.T) {
-			needBarrier(t, mode)
 			s := Settings{Model: "cavity", Modes: []string{mode, "2,2,1"}, Reflectivity: "boltzmann", Grid: Grid{First: 60, Count: 10, Step: 1}, Length: 1}
 			c := newTestModel(t, s).(*Cavity)
 			l, m, n, err := ParseMode(mode)

@@ -86,7 +86,6 @@ func TestCavityWithoutReflectionIsTheRingdown(t *testing.T) {
 			for _, excitation := range []string{"barrier", "source", "infall"} {
 				s.Reflectivity, s.Excitation = law.law, excitation
 				t.Run(fmt.Sprintf("%v %s %s %s %g", tc.modes, tc.angular, law.law, excitation, tc.lead), func(t *testing.T) {
-					needBarrier(t, tc.modes...)
 					m := newTestModel(t, s)
 					got := fill(t, m, namedTheta(t, m, modeValues(tc.modes, excitedValues, law.none)), s.Grid.Count)
 					if j, same := sameBits(got, want); !same {
@@ -123,7 +122,6 @@ func TestInfallOfNothingIsTheRingdown(t *testing.T) {
 func TestGroupsAddUp(t *testing.T) {
 	groups := [][]string{{"2,2,0", "2,2,1"}, {"3,3,0"}, {"2,-2,0"}, {"2,1,0"}, {"4,4,0"}, {"2,0,0"}}
 	all := []string{"2,2,0", "3,3,0", "2,-2,0", "2,2,1", "2,1,0", "4,4,0", "2,0,0"}
-	needBarrier(t, all...)
 	for _, excitation := range []string{"barrier", "source"} {
 		s := Settings{Model: "cavity", Modes: all, Reflectivity: "lorentzian", Excitation: excitation, Grid: Grid{First: 60, Count: 1500, Step: 0.5}, Inclination: 1.1, Length: 2, Lead: 0.1}
 		law := map[string]float64{"reflectivity": 0.9, "corner": 5}
@@ -160,7 +158,6 @@ func TestEveryModesEchoesComeLater(t *testing.T) {
 	const rate, duration = 2048, 2.0
 	for _, mode := range []string{"2,2,0", "3,3,0", "2,1,0", "2,-2,0", "2,0,0", "3,2,0", "4,4,0"} {
 		t.Run(mode, func(t *testing.T) {
-			needBarrier(t, mode)
 			grid := Grid{First: 10 * duration, Count: 990 * duration, Step: 1 / duration}
 			s := Settings{Model: "ringdown", Modes: []string{mode}, Grid: grid, Inclination: 0.9, Length: duration - 0.25}
 			values := modeValues(s.Modes, map[string]float64{"start_time": 0, "reflectivity": 0.9})

@@ -62,7 +62,6 @@ func TestGrowthTime(t *testing.T) {
 		t.Errorf("growth time %g s, want about %g s", got, want)
 	}
 	// The fastest of the groups counts.
-	needBarrier(t, "3,3,0")
 	s.Modes = []string{"3,3,0", "2,2,0"}
 	two := newTestModel(t, s)
 	more := make([]float64, len(two.Derived()))

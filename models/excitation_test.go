@@ -12,20 +12,6 @@ import (
 	"knell/models/kerr"
 )
 
-// needBarrier skips a test of modes whose barrier has no table.
-func needBarrier(t testing.TB, modes ...string) {
-	t.Helper()
-	for _, mode := range modes {
-		l, m, _, err := ParseMode(mode)
-		if err != nil {
-			t.Fatal(err)
-		}
-		if _, err := kerr.NewBarrier(l, m, kerr.Odd); err != nil {
-			t.Skip(err)
-		}
-	}
-}
-
 // namedTheta puts named values in a model's order; what is not named takes its
 // default.
 func namedTheta(t testing.TB, m Model, values map[string]float64) []float64 {
@@ -174,7 +160,6 @@ func TestPhysicsExcitations(t *testing.T) {
 		{"infall", "constant", "", []string{"2,-2,0"}, 0.8, 0, map[string]float64{"infall_amplitude": 3, "infall_phase": 2, "infall_width": 0.05}, false},
 	} {
 		t.Run(tc.excitation+" "+tc.law+" "+strings.Join(tc.modes, " "), func(t *testing.T) {
-			needBarrier(t, tc.modes...)
 			s := Settings{Model: "cavity", Modes: tc.modes, Reflectivity: tc.law, Parity: tc.parity, Excitation: tc.excitation, Grid: grid, Inclination: 0.6, Length: tc.length}
 			values := map[string]float64{"mass": 68, "spin": spin, "start_time": tc.start, "offset": 0, "echo_phase": 0.4, "reflectivity": 1,
 				"amplitude_220": 1, "phase_220": 1.1, "amplitude_221": 2, "phase_221": 3, "amplitude_330": 0.7, "phase_330": 0.2,
