@@ -133,8 +133,8 @@ const transmissionFrom = 1e-3
 // Beyond the barrier's table nothing is reflected, so |T|^2 = k/omega, and the
 // phase is continued to a limit with one over the frequency, as a potential that
 // does not depend on the frequency has it; value and slope join the table's.
-// Between M omega = 1.7 and 2 that would be off by 0.003 at spin 0 and by up to 0.1
-// at spin 0.95: a tenth of a radian in the part of a very short pulse that no
+// TestTransmissionBeyondTheTable measures it up to kerr.MaxFrequency: off by 0.001
+// at spin 0 and by 0.06 at spin 0.95, in the part of a very short pulse that no
 // barrier holds back.
 //
 // Below the table, where |T| is about 1e-6 or less, it falls with the l-th power of
