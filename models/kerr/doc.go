@@ -30,14 +30,20 @@
 //  1. upgoing.go integrates the radial equation from far away to the horizon for
 //     one frequency; response.go turns the amplitudes into reflection and
 //     transmission, flux normalised, with the phase of a parity
-//     (BarrierResponse). R is good to 1e-12, in 20 µs.
-//  2. table.go evaluates that on the grid of grid.go for l = m = 2
-//     (WriteBarrierTable, run by go generate through internal/tabulate in about
-//     3 s a parity) and reads the file back.
-//  3. barrier.go embeds the files and serves a sampler: SetSpin once per spin
-//     (30 µs), then Reflection for any number of frequencies (5 ns each). Its
-//     error in R is below 2e-7 at every spin and frequency, as measured by
-//     internal/tabulate -measure.
+//     (BarrierResponse; its comment has errors and cost).
+//  2. internal/tabulate, run by go generate, fits charts of R and T to that for
+//     l = 2 to 4 (internal/chart): local polynomials in spin and frequency whose
+//     frequencies move with the features of the response. It takes 4 minutes on
+//     two cores, fills barrier/ with 5.3 MB and measures each file at 4,000 random
+//     points: it is off by 1.7e-10 of R and 3.4e-10 of T at most.
+//  3. table.go embeds the files and decodes one when it is first asked for (8 ms);
+//     table_even.go gives R the phase of the other parity (20 ms more).
+//  4. barrier.go serves a sampler: SetSpin once per spin, then Reflection and
+//     Transmission for any number of frequencies. section.go sums the terms in
+//     spin of those pieces that frequencies fall into, section_walk.go evaluates
+//     what is left, polynomials in frequency. R at a new spin and 8,000 even
+//     frequencies from 0.001 to 2 takes 31 µs (BenchmarkNewSpin8000), T 33 µs
+//     (BenchmarkTransmission).
 //
 // geometry.go has horizons, light rings, temperature, tortoise coordinate and
 // echo delay.

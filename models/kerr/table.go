@@ -78,11 +78,11 @@ func newTable(file []byte, kind tableKind, l, m int) (*table, error) {
 	}
 	end := 0.0
 	for i := range c.Panels {
-		if p := &c.Panels[i]; p.Low != end {
+		p := &c.Panels[i]
+		if p.Low != end {
 			return nil, fmt.Errorf("kerr: barrier table (%d,%d) has a panel from %g on, want %g", l, m, p.Low, end)
-		} else {
-			end = p.High
 		}
+		end = p.High
 	}
 	if end != math.Atanh(MaxSpin) || !(c.Low < c.High) || !(c.Gap >= 0) {
 		return nil, fmt.Errorf("kerr: barrier table (%d,%d) ends at spin %g, want %g", l, m, math.Tanh(end), MaxSpin)
