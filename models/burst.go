@@ -100,6 +100,9 @@ func (b *Burst) Clone() Model {
 
 // Fill implements Model.
 func (b *Burst) Fill(theta []float64, h *Polarizations) error {
+	if err := checkDomain(b.parameters, theta); err != nil {
+		return err
+	}
 	h.clear()
 	for ; len(theta) >= packetSize; theta = theta[packetSize:] {
 		amplitude, phase, time, frequency, width := theta[0], theta[1], theta[2], theta[3], theta[4]

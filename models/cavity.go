@@ -33,6 +33,7 @@ import (
 type Cavity struct {
 	grid          Grid
 	start, length float64
+	spill         float64
 	lead          float64
 	ringing       *ringing
 	law           reflectivity
@@ -125,7 +126,7 @@ func newCavity(s Settings) (Model, error) {
 		return nil, err
 	}
 	c := &Cavity{
-		grid: s.Grid, start: s.Start, length: s.Length, lead: s.Lead,
+		grid: s.Grid, start: s.Start, length: s.Length, spill: s.Spill, lead: s.Lead,
 		ringing: ringing, law: law, excitation: excitation, parity: parity, parameters: parameters,
 		offsetIndex: 3 + 2*len(ringing.tracks),
 	}
@@ -174,6 +175,9 @@ func (c *Cavity) Derived() []Parameter {
 
 // Derive implements Model.
 func (c *Cavity) Derive(theta, out []float64) error {
+	if err := checkDomain(c.parameters, theta); err != nil {
+		return err
+	}
 	if err := c.ringing.derive(theta[0], theta[1], out); err != nil {
 		return err
 	}
@@ -195,6 +199,9 @@ func (c *Cavity) Clone() Model {
 
 // Fill implements Model.
 func (c *Cavity) Fill(theta []float64, h *Polarizations) error {
+	if err := checkDomain(c.parameters, theta); err != nil {
+		return err
+	}
 	h.clear()
 	late := theta[2] - c.start
 	var err error

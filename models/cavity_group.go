@@ -75,6 +75,12 @@ type place struct {
 	exciting []float64 // the excitation's parameters
 }
 
+// earlyArrival is how long before its nominal time an echo still matters, in M:
+// what the surface reflects at some frequencies only is spread in time. An echo
+// that is due within that time of the data's end counts, as far as the gate hides
+// its later part: half of the gate for the lateness, half for the echo.
+const earlyArrival = 100.0
+
 // maxEchoes bounds the echoes that are counted. Only a surface within a millionth
 // of the data's length of the light ring has more, and no cavity to speak of.
 const maxEchoes = 1e6
@@ -88,8 +94,9 @@ func (c *Cavity) place(theta []float64, late float64) place {
 		phase: theta[c.echoPhaseIndex], law: theta[c.lawIndex:c.excitationIndex], exciting: theta[c.excitationIndex:],
 	}
 	p.step = 2 * math.Pi * c.grid.Step * p.scale
-	if delay := p.delay * p.scale; delay > 0 && c.length > late {
-		p.span = math.Min((c.length-late)/delay, maxEchoes)
+	length := c.length + math.Min(c.spill/2, earlyArrival*p.scale)
+	if delay := p.delay * p.scale; delay > 0 && length > late {
+		p.span = math.Min((length-late)/delay, maxEchoes)
 	}
 	return p
 }

@@ -47,7 +47,7 @@ func modeValues(modes []string, more ...map[string]float64) map[string]float64 {
 		if m < 0 {
 			name = fmt.Sprintf("%dm%d%d", l, -m, n)
 		}
-		values["amplitude_"+name], values["phase_"+name] = 1e-21/float64(1+i), 1.1+float64(i)
+		values["amplitude_"+name], values["phase_"+name] = 1e-21/float64(1+i), math.Mod(1.1+float64(i), 2*math.Pi)
 	}
 	for _, list := range more {
 		for name, v := range list {
@@ -291,6 +291,39 @@ func TestCavityComplains(t *testing.T) {
 		got, ok := err.(*SettingError)
 		if !ok || *got != tc.want {
 			t.Errorf("%v, want %v", err, &tc.want)
+		}
+	}
+}
+
+// An echo due a little after the data's end begins before it, and counts where a
+// gate hides what wraps around; one due later does not.
+func TestEchoAtTheEndOfTheData(t *testing.T) {
+	const mass, spin = 68, 0.69
+	s := Settings{Model: "cavity", Modes: []string{"2,2,0"}, Reflectivity: "constant", Grid: Grid{First: 60, Count: 500, Step: 0.5}}
+	scale := mass * constants.SolarMassSeconds
+	delay := kerr.EchoDelay(spin, lnDistance(mass, 0)) * scale
+	echoes := func(after, spill float64) bool {
+		s.Length, s.Spill = delay-after*scale, spill
+		m := newTestModel(t, s)
+		theta := namedTheta(t, m, modeValues(s.Modes, map[string]float64{"mass": mass, "spin": spin, "start_time": 0, "offset": 0, "reflectivity": 0.9}))
+		got := fill(t, m, theta, s.Grid.Count)
+		ringdown := newTestModel(t, Settings{Model: "ringdown", Modes: s.Modes, Grid: s.Grid})
+		want := fill(t, ringdown, theta[:5], s.Grid.Count)
+		for j := range want.PlusRe {
+			if math.Abs(got.PlusRe[j]-want.PlusRe[j]) > 1e-9*math.Abs(want.PlusRe[j]) {
+				return true
+			}
+		}
+		return false
+	}
+	for _, tc := range []struct {
+		after, spill float64
+		want         bool
+	}{
+		{-1, 0, true}, {1, 0, false}, {50, 0.25, true}, {99, 0.25, true}, {101, 0.25, false}, {50, 40 * scale, false}, {15, 40 * scale, true},
+	} {
+		if got := echoes(tc.after, tc.spill); got != tc.want {
+			t.Errorf("echo due %g M after the end, %g s hidden: counted %v, want %v", tc.after, tc.spill, got, tc.want)
 		}
 	}
 }

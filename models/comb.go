@@ -162,6 +162,9 @@ func (c *Comb) Derived() []Parameter {
 
 // Derive implements Model.
 func (c *Comb) Derive(theta, out []float64) error {
+	if err := checkDomain(c.parameters, theta); err != nil {
+		return err
+	}
 	if c.ringing != nil {
 		if err := c.ringing.derive(theta[0], theta[1], out); err != nil {
 			return err
@@ -190,6 +193,9 @@ func (c *Comb) Bend(_ int, theta, centre []float64) float64 {
 
 // Fill implements Model.
 func (c *Comb) Fill(theta []float64, h *Polarizations) error {
+	if err := checkDomain(c.parameters, theta); err != nil {
+		return err
+	}
 	h.clear()
 	late := theta[c.startIndex] - c.start
 	if c.ringing != nil {

@@ -53,7 +53,8 @@ type Model interface {
 	// Parameters lists the parameters in the order of theta.
 	Parameters() []Parameter
 	// Fill writes the polarisations at theta. A theta inside the domain of
-	// every parameter gives no error.
+	// every parameter gives no error; one outside gives an error that names the
+	// parameter and its domain.
 	Fill(theta []float64, h *Polarizations) error
 	// Derived lists the derived quantities in the order of Derive.
 	Derived() []Parameter
@@ -107,6 +108,9 @@ type Settings struct {
 	// Length of data after the analysis start, s; echoes that would arrive
 	// later are left out.
 	Length float64
+	// Spill is how many seconds after Length a signal may go on: it wraps around
+	// to the segment's beginning, where a likelihood's gate hides that much.
+	Spill float64
 }
 
 // SettingError says which setting is wrong, so that a caller can point to the
@@ -198,6 +202,17 @@ func New(s Settings) (Model, error) {
 		}
 	}
 	panic("models: described but not built: " + s.Model)
+}
+
+// checkDomain returns an error that names the first parameter outside its domain.
+func checkDomain(parameters []Parameter, theta []float64) error {
+	for i := range parameters {
+		p := &parameters[i]
+		if v := theta[i]; !(v >= p.Low && v <= p.High) {
+			return fmt.Errorf("models: %s = %g, want %g to %g", p.Name, v, p.Low, p.High)
+		}
+	}
+	return nil
 }
 
 // maxStart bounds the start time, s; beyond it phases lose their last digits.

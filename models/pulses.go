@@ -74,6 +74,9 @@ func (p *Pulses) Derived() []Parameter {
 
 // Derive implements Model.
 func (p *Pulses) Derive(theta, out []float64) error {
+	if err := checkDomain(p.parameters, theta); err != nil {
+		return err
+	}
 	if err := p.ringing.derive(theta[0], theta[1], out); err != nil {
 		return err
 	}
@@ -91,6 +94,9 @@ func (p *Pulses) Clone() Model {
 
 // Fill implements Model.
 func (p *Pulses) Fill(theta []float64, h *Polarizations) error {
+	if err := checkDomain(p.parameters, theta); err != nil {
+		return err
+	}
 	h.clear()
 	late := theta[2] - p.start
 	own := theta[3+2*len(p.ringing.tracks):]

@@ -47,6 +47,9 @@ func (r *Ringdown) Derived() []Parameter { return r.ringing.derived() }
 
 // Derive implements Model.
 func (r *Ringdown) Derive(theta, out []float64) error {
+	if err := checkDomain(r.parameters, theta); err != nil {
+		return err
+	}
 	return r.ringing.derive(theta[0], theta[1], out)
 }
 
@@ -59,6 +62,9 @@ func (r *Ringdown) Clone() Model {
 
 // Fill implements Model.
 func (r *Ringdown) Fill(theta []float64, h *Polarizations) error {
+	if err := checkDomain(r.parameters, theta); err != nil {
+		return err
+	}
 	h.clear()
 	for i := range r.ringing.tracks {
 		w, err := r.ringing.wave(i, theta[0], theta[1], theta[3+2*i], theta[4+2*i])

@@ -110,6 +110,7 @@ func names(list []models.Parameter) string {
 func modelSettings(h Hypothesis, c *Config) models.Settings {
 	a := c.Analysis
 	s := h.settings()
-	s.Grid, s.Inclination, s.Start, s.Length = a.grid(), c.Event.Inclination, a.Start, a.Duration-a.Gate
+	s.Grid, s.Inclination, s.Start = a.grid(), c.Event.Inclination, a.Start
+	s.Length, s.Spill = a.Duration-a.Gate, a.Gate
 	return s
 }
