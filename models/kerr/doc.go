@@ -45,8 +45,13 @@
 //     frequencies from 0.001 to 2 takes 31 µs (BenchmarkNewSpin8000), T 33 µs
 //     (BenchmarkTransmission).
 //
-// geometry.go has horizons, light rings, temperature, tortoise coordinate and
-// echo delay.
+// stability*.go and gain.go: the superradiant band in a table of its own, which
+// knows |R|² - 1 even where it is 1e-10, the largest reflectivity that is stable,
+// and a cavity's fastest growing mode.
+//
+// geometry*.go has horizons, light rings, temperature, proper distances, the
+// tortoise coordinate with its inverse, and the echo delay. infinity.go turns a
+// Response around, for waves that come from far away.
 //
 // Which mode is which: overtone n is the n-th by decay rate at spin 0, and keeps
 // its number along the spin. A few pairs of overtones nearly meet on the way

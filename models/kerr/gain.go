@@ -216,7 +216,8 @@ func (b *band) wave(t float64) float64 {
 }
 
 // guide is the phase of a wave turned back at x = (r - r+)/(r+ - r-) = 3√(1 + kh²),
-// see grid.go; it is only good for telling branches of a phase apart.
+// inside the barrier's foot when the wave is slow there and further out when it is
+// fast; it is only good for telling branches of a phase apart.
 func (b *band) guide(p float64) float64 {
 	d := 2 * rootOfDeficit(b.spin)
 	kh := p / (2 * b.kappa)

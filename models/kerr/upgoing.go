@@ -138,7 +138,7 @@ func (b *background) match(x, u, du complex128) (out, in complex128) {
 	g, dg := b.nearIn(x)
 	gap := x * (1 + x) // Δ/d²
 	delta := gap * complex(b.d*b.d, 0)
-	wave := cmplx.Exp(-2i * b.complexPhase(x))
+	wave := cmplx.Exp(-2i * b.phase(x))
 	// Derivatives in x, from here on without Δ e^{-2iφ}. dφ/dx = K/(d x(1+x)).
 	slope := complex(2, 0)*(1+2*x) - 2i*(complex(b.kh, 0)+complex(b.w, 0)*x*complex(2*b.rp, 0)+complex(b.w*b.d, 0)*x*x)
 	h, dh := delta*g, delta*dg+slope*complex(b.d*b.d, 0)*g
@@ -149,15 +149,9 @@ func (b *background) match(x, u, du complex128) (out, in complex128) {
 	return out, in
 }
 
-// phase returns φ(x) with φ → ωr* far away: ωr* - (am/d) ln(x/(1+x)).
-func (b *background) phase(x float64) float64 {
-	rstar := TortoiseLog(b.a, math.Log(b.d*x))
-	return b.w*rstar - float64(b.m)*b.a/b.d*math.Log(x/(1+x))
-}
-
-// complexPhase is phase on the complex plane above the real axis, and on its
-// upper side where x < 0.
-func (b *background) complexPhase(x complex128) complex128 {
+// phase returns φ(x) with φ → ωr* far away, ωr* - (am/d) ln(x/(1+x)), above the
+// real axis, and on its upper side where x < 0.
+func (b *background) phase(x complex128) complex128 {
 	ln, ln1 := cmplx.Log(x), cmplx.Log(1+x)
 	lnHalf := complex(math.Log(b.d/2), 0)
 	rstar := complex(b.rp, 0) + complex(b.d, 0)*x +
