@@ -74,6 +74,31 @@ func TestReflectionWalks(t *testing.T) {
 	}
 }
 
+// TestWalkPastTheEnds: steps far below the rounding of ω, from an end of the range
+// or from within its slack, give R there over and over.
+func TestWalkPastTheEnds(t *testing.T) {
+	for _, m := range []int{2, -2} {
+		barrier := newBarrier(t, 2, m, Odd)
+		low, high := barrier.Range()
+		for _, end := range []float64{low, low * (1 + slack/2), high, high * (1 + slack/2)} {
+			for _, f := range []func(omega0, domega float64, re, im []float64) error{barrier.Reflection, barrier.Transmission} {
+				want := one(t, f, end)
+				for _, step := range []float64{5e-324, 1e-16, 1e-15} {
+					re, im := make([]float64, 20), make([]float64, 20)
+					if err := f(end, math.Copysign(step, end), re, im); err != nil {
+						t.Fatal(err)
+					}
+					for j := range re {
+						if cmplx.Abs(complex(re[j], im[j])/want-1) > walkTolerance {
+							t.Errorf("m=%d from %v by %g: the %d-th is %v, want %v", m, end, step, j, complex(re[j], im[j]), want)
+						}
+					}
+				}
+			}
+		}
+	}
+}
+
 // TestReach: |R| stays below 1e-8 outside the reach, and inside it is not left
 // out needlessly.
 func TestReach(t *testing.T) {

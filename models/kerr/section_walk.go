@@ -20,7 +20,8 @@ func (s *section) walk(omega0, domega float64, re, im []float64) {
 			if domega < 0 {
 				edge = s.bounds[i]
 			}
-			if steps := (edge - omega) / domega; steps < float64(count) {
+			// Negative where rounding has carried ω past an end of the table.
+			if steps := max(0, (edge-omega)/domega); steps < float64(count) {
 				count = min(count, 1+int(steps))
 			}
 		}
