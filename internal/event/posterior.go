@@ -25,7 +25,8 @@ func (p *Prepared) summarise(h *hypothesis, o *sampler.Outcome) (report.Hypothes
 		LogEvidenceError: report.Number(math.Hypot(o.LogEvidenceError, h.allowed.error)),
 		LogEvidenceOver:  report.Number(o.LogEvidence - h.allowed.logMass()),
 		Calls:            o.Calls, LivePoints: o.LivePoints,
-		Information:      report.Number(o.Information),
+		// The density of the prior that is left is higher by one over its mass.
+		Information:      report.Number(o.Information + h.allowed.logMass()),
 		EffectiveSamples: report.Number(o.EffectiveSamples),
 		InsertionRankP:   report.Number(o.InsertionRankP),
 		Status:           o.Status.String(), Partial: o.Partial,
@@ -94,20 +95,31 @@ func newColumns(n, length int) [][]float64 {
 }
 
 // weightedQuantiles returns the quantiles of x under the weights, which need not
-// be normalised.
+// be normalised. What is not a number counts as larger than every number.
 func weightedQuantiles(x, weights []float64, levels ...float64) []float64 {
 	order := make([]int, len(x))
 	for i := range order {
 		order[i] = i
 	}
-	sort.Slice(order, func(a, b int) bool { return x[order[a]] < x[order[b]] })
+	sort.Slice(order, func(a, b int) bool {
+		v, w := x[order[a]], x[order[b]]
+		return v < w || math.IsNaN(w) && !math.IsNaN(v)
+	})
 	sortedX, sortedW := make([]float64, len(x)), make([]float64, len(x))
+	numbers, weight, all := 0, 0.0, 0.0
 	for i, k := range order {
 		sortedX[i], sortedW[i] = x[k], weights[k]
+		all += weights[k]
+		if !math.IsNaN(x[k]) {
+			numbers, weight = i+1, all
+		}
 	}
 	out := make([]float64, len(levels))
 	for i, level := range levels {
-		out[i] = stat.Quantile(level, stat.Empirical, sortedX, sortedW)
+		out[i] = math.NaN()
+		if share := level * (all / weight); share <= 1 {
+			out[i] = stat.Quantile(share, stat.Empirical, sortedX[:numbers], sortedW[:numbers])
+		}
 	}
 	return out
 }
