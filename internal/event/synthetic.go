@@ -90,7 +90,8 @@ func lowestOf(curve func(float64) float64, limit float64) float64 {
 // injectionLength is the shortest stretch on which an injection is computed, s.
 const injectionLength = 8.0
 
-// injectionRise is how long before its start an injected signal begins, s.
+// injectionRise is how long before its start an injected ringdown begins, s, where the
+// start is not after the analysis start.
 const injectionRise = 0.05
 
 // inject adds the known signal to a site's strain.
@@ -105,8 +106,11 @@ func (p *Prepared) inject(series *strain.Series, plus, cross, delay float64) err
 	settings := c.injectionSettings()
 	settings.Grid = models.Grid{First: 1, Count: n/2 - 1, Step: 1 / length}
 	settings.Length = (1 - before) * length
-	// Rising before its start as a merger does, within a few cycles.
-	settings.Lead = injectionRise
+	// Rising before its start as a merger does, within a few cycles, where that is not
+	// analysed: a hypothesis whose start lies in the data begins with a jump there.
+	if c.Injection.Values["start_time"] <= c.Analysis.Start {
+		settings.Lead = injectionRise
+	}
 	model, err := models.New(settings)
 	if err != nil {
 		return c.fault("injection", err)
