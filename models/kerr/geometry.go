@@ -21,8 +21,14 @@ func checkSpin(spin float64) error {
 // The functions below take a spin in [0, 1) and units of G = c = M = 1. They
 // return NaN outside [0, 1).
 
-// rootOfDeficit returns √(1-a²), without the loss of digits of 1-a*a near 1.
-func rootOfDeficit(spin float64) float64 { return math.Sqrt((1 - spin) * (1 + spin)) }
+// rootOfDeficit returns √(1-a²), without the loss of digits of 1-a*a near 1, and
+// NaN outside [0, 1).
+func rootOfDeficit(spin float64) float64 {
+	if !(spin >= 0 && spin < 1) {
+		return math.NaN()
+	}
+	return math.Sqrt((1 - spin) * (1 + spin))
+}
 
 // HorizonRadius returns r+ = 1 + √(1-a²), the outer horizon's radial coordinate.
 func HorizonRadius(spin float64) float64 { return 1 + rootOfDeficit(spin) }

@@ -103,8 +103,11 @@ func lnSinh(x float64) float64 {
 }
 
 // pathLength returns the proper distance to p and its derivative by p;
-// h = √(1-a²).
+// h = √(1-a²). NaN gives NaN.
 func pathLength(spin, h, p float64, path Path) (length, slope float64) {
+	if !(h*p < math.MaxFloat64) { // no number of panels
+		return h * p, h * p
+	}
 	if path == Equator {
 		return p + h*math.Sinh(p), 1 + h*math.Cosh(p)
 	}

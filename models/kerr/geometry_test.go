@@ -36,3 +36,29 @@ func TestTortoiseLog(t *testing.T) {
 		}
 	}
 }
+
+// TestGeometryOutside: no spin outside [0, 1), and no place that is not a number,
+// gives one.
+func TestGeometryOutside(t *testing.T) {
+	for _, spin := range []float64{-0.1, 1, 1.5, math.Inf(1), math.NaN()} {
+		for i, got := range []float64{
+			HorizonRadius(spin), InnerHorizonRadius(spin), HorizonFrequency(spin), SurfaceGravity(spin), HawkingTemperature(spin),
+			LightRing(spin), RetrogradeLightRing(spin), Tortoise(spin, 3), TortoiseLog(spin, -100), InverseTortoise(spin, -100), InverseTortoise(spin, 30),
+			SurfaceGap(spin, -100, Axis), SurfaceGap(spin, 0.1, Axis), SurfaceGap(spin, 0.1, Equator),
+			ProperDistance(spin, -100, Axis), ProperDistance(spin, 0.1, Axis), ProperDistance(spin, 0.1, Equator),
+			SurfaceTortoise(spin, -100), EchoDelay(spin, -100), EchoDelayLog(spin, -100), EchoDelayExcess(spin, -100), ExcessGap(spin, -100),
+		} {
+			if !math.IsNaN(got) {
+				t.Errorf("the %d-th at spin %g: %g, want NaN", i, spin, got)
+			}
+		}
+	}
+	for _, path := range []Path{Axis, Equator} {
+		if got := ProperDistance(0.5, math.NaN(), path); !math.IsNaN(got) {
+			t.Errorf("path %d: distance %g of no place, want NaN", path, got)
+		}
+		if got := ProperDistance(0.5, 1e4, path); !math.IsInf(got, 1) {
+			t.Errorf("path %d: distance %g at exp(1e4), want one that overflows", path, got)
+		}
+	}
+}
