@@ -136,6 +136,10 @@ func TestEchoAmplitudes(t *testing.T) {
 	if math.Abs(float64(at.MaxReflectivity)-0.96937) > 6e-6 || math.Abs(float64(at.Gain)-0.064201) > 5e-7 || relative(at.GainFrequency, hertz) > 2e-4 {
 		t.Errorf("got %+v", at)
 	}
+	// The band of -m is that of m, at negative frequencies.
+	if back := echoes(t, "--mass 68 --spin 0.9 --m -2").Stability; back.Gain != at.Gain || back.GainFrequency != -at.GainFrequency || back.MaxReflectivity != at.MaxReflectivity {
+		t.Errorf("m = -2: %+v, m = 2: %+v", back, at)
+	}
 	if at := echoes(t, "--mass 68 --spin 0"); at.Stability.Gain != 0 || at.Stability.MaxReflectivity != 1 || !at.Laws[0].Stable {
 		t.Errorf("spin 0: %+v", at)
 	}

@@ -13,9 +13,9 @@ import (
 // loudest frequency may lie between two of them: FastestGrowth looks at the modes.
 
 // SuperradiantGain returns the largest amplification |R|² - 1 of the (l, m) wave
-// over all frequencies, and the Mω > 0 at which it is reached, by direct integration
-// (BarrierResponse). It is 0, at ω = 0, for m <= 0 and for spin 0: the negative
-// frequencies of m > 0 are those of -m > 0, with the same gain.
+// over all frequencies, and the Mω at which it is reached, by direct integration
+// (BarrierResponse). It is 0, at ω = 0, for m = 0 and for spin 0. For m < 0 the band,
+// and with it ω, is negative, and the gain that of -m.
 //
 // l runs from 2 to 4, |m| <= l, spin from 0 to MaxSpin. The gain is good to 1e-9 of
 // itself, ω to 1e-8; below spin 1e-5, where it is below 1e-33, it follows the
@@ -27,8 +27,12 @@ func SuperradiantGain(l, m int, spin float64) (gain, omega float64, err error) {
 	if err := checkSpin(spin); err != nil {
 		return 0, 0, err
 	}
-	if m <= 0 || spin == 0 {
+	if m == 0 || spin == 0 {
 		return 0, 0, nil
+	}
+	if m < 0 {
+		gain, omega, err = SuperradiantGain(l, -m, spin)
+		return gain, -omega, err
 	}
 	b := newBand(l, m, spin)
 	if spin < lowestGainSpin {

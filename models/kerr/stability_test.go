@@ -122,9 +122,27 @@ func TestSuperradiantGainEdges(t *testing.T) {
 	for _, tc := range []struct {
 		l, m int
 		spin float64
-	}{{2, 0, 0.9}, {2, -2, 0.9}, {2, 2, 0}, {4, -1, MaxSpin}} {
+	}{{2, 0, 0.9}, {2, 2, 0}, {3, -2, 0}, {4, 0, MaxSpin}} {
 		if gain, omega, err := SuperradiantGain(tc.l, tc.m, tc.spin); gain != 0 || omega != 0 || err != nil {
 			t.Errorf("%+v: gain %g at %g, error %v, want 0", tc, gain, omega, err)
+		}
+	}
+	// The same remnant for -m: what the barrier does at the frequency found, and
+	// what MaxStableReflectivity allows.
+	for _, tc := range []struct {
+		l, m int
+		spin float64
+	}{{2, -2, 0.9}, {2, 2, 0.9}, {4, -1, MaxSpin}, {3, -3, 1e-6}} {
+		gain, omega, err := SuperradiantGain(tc.l, tc.m, tc.spin)
+		if err != nil || !(omega*float64(tc.m) > 0) || !(gain > 0) {
+			t.Fatalf("%+v: gain %g at %g, error %v", tc, gain, omega, err)
+		}
+		r, err := BarrierResponse(tc.l, tc.m, tc.spin, omega, Odd)
+		if err != nil || math.Abs(-r.Greybody/gain-1) > 1e-4 {
+			t.Errorf("%+v: gain %g at %g, there it is %g, error %v", tc, gain, omega, -r.Greybody, err)
+		}
+		if s, err := MaxStableReflectivity(tc.l, tc.m, tc.spin); err != nil || math.Abs(1/(s*s)-1-gain) > 1e-6*gain+1e-15 {
+			t.Errorf("%+v: gain %g, but up to %.16g is stable, error %v", tc, gain, s, err)
 		}
 	}
 	one := func(float64) float64 { return 1 }
