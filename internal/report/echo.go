@@ -50,7 +50,8 @@ type EchoMode struct {
 	Magnitude   Number    `json:"barrier"`    // |R|
 }
 
-// EchoStability says what the amplification of waves in the ergoregion allows.
+// EchoStability says what the amplification of waves in the ergoregion allows, for
+// waves of this l and m alone: those of l = m = 2 are amplified most.
 type EchoStability struct {
 	Gain            Number `json:"gain"`             // largest |R|^2 - 1
 	GainFrequency   Number `json:"gain_hz"`          // where; 0 if there is none
@@ -138,8 +139,9 @@ func EchoTable(out io.Writer, d *EchoDocument) error {
 	add(mode+" frequency", "%.6f", d.Mode.Frequency, "Hz")
 	add(mode+" damping time", "%.6f", 1e3*d.Mode.DampingTime, "ms")
 	add("barrier's |R| at that frequency", "%.9f", d.Mode.Magnitude, "")
-	add("largest amplification, |R|^2 - 1", "%.6e", d.Stability.Gain, "")
-	add("largest stable constant reflectivity", "%.9f", d.Stability.MaxReflectivity, "")
+	wave := fmt.Sprintf("(%d,%d)", d.L, d.M)
+	add("largest amplification of "+wave+", |R|^2 - 1", "%.6e", d.Stability.Gain, "")
+	add("largest stable constant reflectivity, "+wave, "%.9f", d.Stability.MaxReflectivity, "")
 	if err := g.write(out); err != nil {
 		return err
 	}
