@@ -1,7 +1,6 @@
 package models
 
 import (
-	"fmt"
 	"math"
 	"strconv"
 	"strings"
@@ -106,9 +105,7 @@ func newCavity(s Settings) (Model, error) {
 	if err != nil {
 		return nil, err
 	}
-	if !(s.Length > 0) {
-		panic(fmt.Sprintf("models: %g s of data after the analysis start", s.Length))
-	}
+	checkLength(s)
 	law, err := findReflectivity(s.Reflectivity)
 	if err != nil {
 		return nil, err
@@ -207,9 +204,9 @@ func (c *Cavity) Fill(theta []float64, h *Polarizations) error {
 	var err error
 	switch {
 	case !c.law.reflects(theta[c.lawIndex:]):
-		err = c.addHorizon(theta, h)
+		err = c.ringing.addTo(h, theta, c.grid, c.lead)
 	case c.excitation == fromInfall:
-		if err = c.addHorizon(theta, h); err == nil {
+		if err = c.ringing.addTo(h, theta, c.grid, c.lead); err == nil {
 			err = c.addInfall(theta, c.place(theta, late), h)
 		}
 	default:
@@ -220,22 +217,6 @@ func (c *Cavity) Fill(theta []float64, h *Polarizations) error {
 	}
 	if late != 0 {
 		h.delay(late, c.grid, c.cos, c.sin)
-	}
-	return nil
-}
-
-// addHorizon adds the signal without reflection, in the ringdown's own order of
-// additions: it is the ringdown's, bit for bit.
-func (c *Cavity) addHorizon(theta []float64, h *Polarizations) error {
-	for i := range c.ringing.tracks {
-		w, err := c.ringing.wave(i, theta[0], theta[1], theta[3+2*i], theta[4+2*i])
-		if err != nil {
-			return err
-		}
-		h.add(w, c.grid, 0)
-		if c.lead > 0 {
-			h.addLead(w, c.grid, c.lead)
-		}
 	}
 	return nil
 }

@@ -57,10 +57,14 @@ func modeValues(modes []string, more ...map[string]float64) map[string]float64 {
 	return values
 }
 
+// sameBits tells even 0 from -0, and where they differ first.
 func sameBits(a, b *Polarizations) (bin int, same bool) {
-	for j := range a.PlusRe {
-		if a.PlusRe[j] != b.PlusRe[j] || a.PlusIm[j] != b.PlusIm[j] || a.CrossRe[j] != b.CrossRe[j] || a.CrossIm[j] != b.CrossIm[j] {
-			return j, false
+	for i, list := range [][]float64{a.PlusRe, a.PlusIm, a.CrossRe, a.CrossIm} {
+		other := [][]float64{b.PlusRe, b.PlusIm, b.CrossRe, b.CrossIm}[i]
+		for j := range list {
+			if math.Float64bits(list[j]) != math.Float64bits(other[j]) {
+				return j, false
+			}
 		}
 	}
 	return 0, true

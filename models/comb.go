@@ -199,15 +199,8 @@ func (c *Comb) Fill(theta []float64, h *Polarizations) error {
 	h.clear()
 	late := theta[c.startIndex] - c.start
 	if c.ringing != nil {
-		for i := range c.ringing.tracks {
-			w, err := c.ringing.wave(i, theta[0], theta[1], theta[3+2*i], theta[4+2*i])
-			if err != nil {
-				return err
-			}
-			h.add(w, c.grid, 0)
-			if c.lead > 0 {
-				h.addLead(w, c.grid, c.lead)
-			}
+		if err := c.ringing.addTo(h, theta, c.grid, c.lead); err != nil {
+			return err
 		}
 	}
 	own := theta[c.ownIndex:]

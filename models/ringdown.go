@@ -66,15 +66,8 @@ func (r *Ringdown) Fill(theta []float64, h *Polarizations) error {
 		return err
 	}
 	h.clear()
-	for i := range r.ringing.tracks {
-		w, err := r.ringing.wave(i, theta[0], theta[1], theta[3+2*i], theta[4+2*i])
-		if err != nil {
-			return err
-		}
-		h.add(w, r.grid, 0)
-		if r.lead > 0 {
-			h.addLead(w, r.grid, r.lead)
-		}
+	if err := r.ringing.addTo(h, theta, r.grid, r.lead); err != nil {
+		return err
 	}
 	if late := theta[2] - r.start; late != 0 {
 		h.delay(late, r.grid, r.cos, r.sin)

@@ -195,6 +195,23 @@ func (r *ringing) wave(i int, mass, spin, amplitude, phase float64) (wave, error
 	}, nil
 }
 
+// addTo adds the modes as a horizon leaves them, for theta that begins with mass, spin,
+// start_time and each mode's amplitude and phase. Every model that contains the ringdown
+// adds it in this order, which makes it the ringdown bit for bit.
+func (r *ringing) addTo(h *Polarizations, theta []float64, g Grid, lead float64) error {
+	for i := range r.tracks {
+		w, err := r.wave(i, theta[0], theta[1], theta[3+2*i], theta[4+2*i])
+		if err != nil {
+			return err
+		}
+		h.add(w, g, 0)
+		if lead > 0 {
+			h.addLead(w, g, lead)
+		}
+	}
+	return nil
+}
+
 // clear zeroes the polarisations.
 func (h *Polarizations) clear() {
 	clear(h.PlusRe)

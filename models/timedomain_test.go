@@ -15,28 +15,15 @@ import (
 	"knell/models/kerr"
 )
 
-// thetaByName puts values into the order of the model's parameters.
+// thetaByName is namedTheta for values that all belong to the model.
 func thetaByName(t testing.TB, m Model, values map[string]float64) []float64 {
 	t.Helper()
-	theta := make([]float64, len(m.Parameters()))
-	known := map[string]bool{}
-	for i, p := range m.Parameters() {
-		v, given := values[p.Name]
-		if !given && !p.HasDefault {
-			t.Fatalf("no value of %s", p.Name)
-		}
-		if !given {
-			v = p.Default
-		}
-		theta[i] = v
-		known[p.Name] = true
-	}
 	for name := range values {
-		if !known[name] {
+		if !slices.ContainsFunc(m.Parameters(), func(p Parameter) bool { return p.Name == name }) {
 			t.Fatalf("the model has no parameter %s", name)
 		}
 	}
-	return theta
+	return namedTheta(t, m, values)
 }
 
 // The sampling of the time-domain tests: far above the modes' 250 Hz.
