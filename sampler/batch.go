@@ -34,6 +34,11 @@ type runner struct {
 	u []float64 // live points, n×dim, in order of rising likelihood
 	l []float64
 
+	birth   []float64 // of the live points, as Outcome.Birth and Outcome.Strand
+	strand  []int32
+	freed   []int32 // strands of the points removed last
+	strands int32   // begun so far
+
 	out   *Outcome
 	flat  []float64 // dead points, n×dim
 	phase [len(methodNames)]Phase
@@ -70,7 +75,7 @@ func (s *slots) resize(n, dim int) {
 func newRunner(p *pool, s Settings, run int, prior ledger) *runner {
 	return &runner{
 		pool: p, set: s, dim: p.dim, run: uint64(run), prior: prior,
-		out:        &Outcome{seed: s.Seed, LivePoints: s.LivePoints, Runs: 1},
+		out:        &Outcome{seed: s.Seed, LivePoints: s.LivePoints, Runs: 1, periodic: s.Periodic},
 		logZ:       math.Inf(-1),
 		sliceCalls: sliceCallsGuess * float64(s.SliceSteps),
 		memory:     newMemory(p.dim, s.SliceSteps),
@@ -158,8 +163,9 @@ func (r *runner) batch(ctx context.Context) (bool, error) {
 	for _, l := range r.fresh.l {
 		r.ranks.enter(l, rng.Rand)
 	}
+	r.ranks.mark(st.method)
 	r.bury(k)
-	r.insert()
+	r.insert(st.threshold)
 	r.out.Iterations++
 	r.report(st.method, 1/calls)
 	return true, nil

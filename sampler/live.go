@@ -10,6 +10,7 @@ import (
 // n, n-1, ..., n-k+1.
 func (r *runner) bury(k int) {
 	n := len(r.l)
+	r.beginStrands()
 	for i := range k {
 		live := n - i
 		r.out.LogLikelihood = append(r.out.LogLikelihood, r.l[i])
@@ -21,12 +22,14 @@ func (r *runner) bury(k int) {
 		r.logZ = sum
 	}
 	r.flat = append(r.flat, r.u[:k*r.dim]...)
+	r.buryStrands(k)
 	r.u = append(r.u[:0], r.u[k*r.dim:]...)
 	r.l = append(r.l[:0], r.l[k:]...)
 }
 
-// insert merges the fresh points into the sorted live ones.
-func (r *runner) insert() {
+// insert merges the fresh points, drawn above the threshold, into the sorted
+// live ones.
+func (r *runner) insert(threshold float64) {
 	order := make([]int, len(r.fresh.l))
 	for i := range order {
 		order[i] = i
@@ -36,18 +39,23 @@ func (r *runner) insert() {
 	n := old + len(order)
 	r.u = slices.Grow(r.u, len(order)*d)[:n*d]
 	r.l = slices.Grow(r.l, len(order))[:n]
+	r.birth = slices.Grow(r.birth, len(order))[:n]
+	r.strand = slices.Grow(r.strand, len(order))[:n]
 	i, j := old-1, len(order)-1
 	for at := n - 1; j >= 0; at-- { // from the top, so that nothing is overwritten
 		if f := order[j]; i < 0 || r.fresh.l[f] >= r.l[i] {
 			r.l[at] = r.fresh.l[f]
+			r.birth[at], r.strand[at] = threshold, r.strandOf(f)
 			copy(r.u[at*d:(at+1)*d], r.fresh.u[f*d:(f+1)*d])
 			j--
 		} else {
 			r.l[at] = r.l[i]
+			r.birth[at], r.strand[at] = r.birth[i], r.strand[i]
 			copy(r.u[at*d:(at+1)*d], r.u[i*d:(i+1)*d])
 			i--
 		}
 	}
+	r.strands += int32(max(0, len(order)-len(r.freed)))
 }
 
 // liveMean is ln of the mean likelihood of the live points.
@@ -84,7 +92,7 @@ func (r *runner) finish() {
 			o.Phases = append(o.Phases, p)
 		}
 	}
-	o.ranks = r.ranks.u
+	o.ranks, o.rankMethods = r.ranks.u, r.ranks.by
 }
 
 func logAdd(a, b float64) float64 {

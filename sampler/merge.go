@@ -19,8 +19,9 @@ func merge(outcomes []*Outcome, workers int) (*Outcome, error) {
 		return nil, fmt.Errorf("sampler: Merge of 0 outcomes, want at least 1")
 	}
 	first := outcomes[0]
-	m := &Outcome{seed: first.seed}
+	m := &Outcome{seed: first.seed, periodic: first.periodic}
 	total := 0
+	strands := joinStrands(outcomes)
 	for i, o := range outcomes {
 		if o == nil || len(o.Points) == 0 {
 			return nil, fmt.Errorf("sampler: Merge: outcome %d has no points", i)
@@ -42,6 +43,7 @@ func merge(outcomes []*Outcome, workers int) (*Outcome, error) {
 		m.PriorZeros += o.PriorZeros
 		m.openEnded = m.openEnded || o.openEnded
 		m.ranks = append(m.ranks, o.ranks...)
+		m.rankMethods = append(m.rankMethods, o.rankMethods...)
 		m.Status = max(m.Status, o.Status)
 		m.Partial = m.Partial || o.Partial
 		m.notes = append(m.notes, o.notes...)
@@ -68,9 +70,12 @@ func merge(outcomes []*Outcome, workers int) (*Outcome, error) {
 		m.Points = append(m.Points, o.Points[h])
 		m.LogLikelihood = append(m.LogLikelihood, o.LogLikelihood[h])
 		m.LiveCount = append(m.LiveCount, live)
+		strands.take(m, next, h)
 		head[next]++
 	}
 	m.weigh(workers)
+	m.bootstrapError(workers)
+	m.compareRuns(outcomes)
 	m.judge()
 	return m, nil
 }

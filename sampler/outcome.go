@@ -29,20 +29,41 @@ func (s Status) String() string {
 	return fmt.Sprintf("Status(%d)", int(s))
 }
 
-// Phase counts the work done by one way of drawing.
+// Phase counts the work done by one way of drawing, and says whether its points
+// were drawn fairly.
 type Phase struct {
 	Name   string // "prior", "ellipsoids" or "slices"
 	Calls  int64  // likelihood calls
 	Points int64  // points accepted
+
+	// The insertion-rank tests as in Outcome, of the Ranks ranks of this phase
+	// alone. The first live points have no rank.
+	Ranks                               int64
+	InsertionRankP, InsertionRankBlockP float64
 }
+
+// Efficiency is the accepted points per likelihood call; an ideal sampler has 1.
+func (p Phase) Efficiency() float64 { return float64(p.Points) / float64(max(p.Calls, 1)) }
 
 // Outcome is a finished run, or several merged ones. Its slices have one
 // element per dead point, in order of rising likelihood.
 type Outcome struct {
 	LogEvidence      float64 // ln of the integral of L over the cube, nats
 	LogEvidenceError float64 // its standard deviation over simulated shrinkages, nats
-	FormulaError     float64 // sqrt(Information / live points), nats, for comparison
-	Information      float64 // nats
+
+	// BootstrapError is the standard deviation of ln Z over resampled strands,
+	// nats, which also sees strands that explore different places. 0 where the
+	// strands are not known. ErrorTension is ln(BootstrapError /
+	// LogEvidenceError) over its own standard error: about a unit normal while
+	// the two agree.
+	BootstrapError, ErrorTension float64
+
+	// RunsP is the p-value of a chi-squared test that the evidences of the
+	// merged runs agree, 1 for a single run.
+	RunsP float64
+
+	FormulaError float64 // sqrt(Information / live points), nats, for comparison
+	Information  float64 // nats
 
 	Status  Status
 	Partial bool // ended before convergence; the numbers hold what was seen so far
@@ -62,6 +83,12 @@ type Outcome struct {
 	LogWeight     []float64   // posterior weight, its exponentials sum to 1
 	LiveCount     []int       // live points just before the point was removed
 
+	// Birth is the log-likelihood above which the point was drawn, -Inf for the
+	// first live points; Strand numbers the strand it belongs to, from 0. See
+	// Strands. nil where they are not known.
+	Birth  []float64
+	Strand []int32
+
 	EffectiveSamples float64 // (sum w)² / sum w²
 
 	// InsertionRankP is the p-value of a Kolmogorov-Smirnov test that the
@@ -77,6 +104,10 @@ type Outcome struct {
 	seed      uint64
 	openEnded bool // the prior draws went on until enough were above zero
 	ranks     []float64
+
+	compared    bool    // RunsP was set
+	rankMethods []uint8 // method that drew the point of each rank
+	periodic    []bool  // as in Settings
 }
 
 // doubtfulP is the p-value of insertion ranks below which a run is in doubt.
@@ -90,12 +121,18 @@ func (o *Outcome) note(format string, args ...any) {
 // judge sets the rank tests, the warnings and the verdict.
 func (o *Outcome) judge() {
 	o.Warnings = append([]string(nil), o.notes...)
-	o.InsertionRankP = uniformP(o.ranks)
-	o.InsertionRankBlockP = blockP(o.ranks, o.LivePoints/max(o.Runs, 1))
+	o.testRanks()
 	var doubts []string
-	if p := min(o.InsertionRankP, o.InsertionRankBlockP); p < doubtfulP {
-		o.Warnings = append(o.Warnings, fmt.Sprintf("insertion ranks are not uniform: p = %.2g", p))
-		doubts = append(doubts, "new points were not drawn fairly: use more live points")
+	if what := o.unfair(); what != "" {
+		doubts = append(doubts, what)
+	}
+	if t := o.ErrorTension; math.Abs(t) > doubtfulTension {
+		o.Warnings = append(o.Warnings, fmt.Sprintf("errors of ln Z disagree: %.3g nat by simulated shrinkage, %.3g by resampled strands, %.1f standard errors apart",
+			o.LogEvidenceError, o.BootstrapError, math.Abs(t)))
+		doubts = append(doubts, fmt.Sprintf("the error may be %.3g nat: compare independent runs", max(o.LogEvidenceError, o.BootstrapError)))
+	}
+	if what := o.disagreement(); what != "" {
+		doubts = append(doubts, what)
 	}
 	if o.Partial {
 		doubts = append(doubts, "the run did not end by itself ("+o.Status.String()+"): let it finish")
@@ -107,6 +144,15 @@ func (o *Outcome) judge() {
 	if len(doubts) > 0 {
 		o.Verdict = "doubtful: " + strings.Join(doubts, "; ")
 	}
+}
+
+// Efficiency is the accepted points per likelihood call of the whole outcome.
+func (o *Outcome) Efficiency() float64 {
+	var points int64
+	for _, p := range o.Phases {
+		points += p.Points
+	}
+	return float64(points) / float64(max(o.Calls, 1))
 }
 
 func (o *Outcome) dim() int {

@@ -1,6 +1,7 @@
 package sampler
 
 import (
+	"fmt"
 	"math"
 	"math/rand/v2"
 	"slices"
@@ -14,6 +15,7 @@ import (
 type ranks struct {
 	order []float64 // sorted log-likelihoods of survivors and entered points
 	u     []float64 // rank made continuous on [0, 1)
+	by    []uint8   // method that drew each
 }
 
 // begin starts a batch with the survivors' log-likelihoods.
@@ -32,6 +34,13 @@ func (r *ranks) enter(l float64, rng *rand.Rand) {
 	rank := lo + rng.IntN(hi-lo+1)
 	r.u = append(r.u, (float64(rank)+rng.Float64())/float64(len(r.order)+1))
 	r.order = slices.Insert(r.order, lo, l)
+}
+
+// mark says that the ranks since the last call are of points drawn by m.
+func (r *ranks) mark(m method) {
+	for len(r.by) < len(r.u) {
+		r.by = append(r.by, uint8(m))
+	}
 }
 
 // uniformP returns the p-value of the Kolmogorov-Smirnov test that u is drawn
@@ -83,4 +92,59 @@ func blockP(u []float64, n int) float64 {
 		least = min(least, uniformP(u[i*len(u)/blocks:(i+1)*len(u)/blocks]))
 	}
 	return -math.Expm1(float64(blocks) * math.Log1p(-min(least, 1-1e-16)))
+}
+
+// testRanks sets the p-values of the insertion ranks of the whole and of each
+// phase.
+func (o *Outcome) testRanks() {
+	block := o.LivePoints / max(o.Runs, 1)
+	o.InsertionRankP = uniformP(o.ranks)
+	o.InsertionRankBlockP = blockP(o.ranks, block)
+	known := len(o.rankMethods) == len(o.ranks)
+	for i := range o.Phases {
+		p := &o.Phases[i]
+		var u []float64
+		for j, x := range o.ranks {
+			if known && methodNames[o.rankMethods[j]] == p.Name {
+				u = append(u, x)
+			}
+		}
+		p.Ranks = int64(len(u))
+		p.InsertionRankP = uniformP(u)
+		p.InsertionRankBlockP = blockP(u, block)
+	}
+}
+
+// unfair warns of ranks that are not uniform, and returns the doubt, with the
+// phase at fault if one shows it by itself. A phase's p-values are corrected for
+// the number of phases.
+func (o *Outcome) unfair() string {
+	whole := min(o.InsertionRankP, o.InsertionRankBlockP)
+	worst, least, tested := -1, 1.0, 0.0
+	for i, p := range o.Phases {
+		if p.Ranks > 0 {
+			tested++
+		}
+		if q := min(p.InsertionRankP, p.InsertionRankBlockP); q < least {
+			worst, least = i, q
+		}
+	}
+	if least *= tested; worst >= 0 && least < doubtfulP {
+		name := o.Phases[worst].Name
+		o.Warnings = append(o.Warnings, fmt.Sprintf("insertion ranks are not uniform where points were drawn from %s: p = %.2g", name, min(whole, least)))
+		return "new points were not drawn fairly from " + name + ": " + cure[name]
+	}
+	if whole < doubtfulP {
+		o.Warnings = append(o.Warnings, fmt.Sprintf("insertion ranks are not uniform: p = %.2g", whole))
+		return "new points were not drawn fairly: use more live points"
+	}
+	return ""
+}
+
+// cure says what helps against unfair draws of each phase. Draws from the whole
+// cube cannot be unfair, unless the likelihood is not a function of the point.
+var cure = map[string]string{
+	fromPrior.String():  "see whether the likelihood gives the same value at the same point",
+	fromUnion.String():  "use more live points",
+	fromSlices.String(): "use more slice steps or more live points",
 }
