@@ -1,0 +1,181 @@
+package main
+
+import (
+	"fmt"
+	"io"
+	"os"
+	"strings"
+	"sync"
+	"time"
+	"unicode/utf8"
+
+	"golang.org/x/term"
+)
+
+// A terminal's line is rewritten, another output gets a line now and then.
+const (
+	terminalEvery = 200 * time.Millisecond
+	plainEvery    = 10 * time.Second
+)
+
+// meter tells how far the runs are. Safe for concurrent use.
+type meter struct {
+	out      io.Writer
+	terminal bool
+	now      func() time.Time
+
+	mu     sync.Mutex
+	cases  []problemCase
+	seeds  int
+	ended  []int     // runs per case
+	spent  []float64 // seconds of those
+	active []activity
+	began  time.Time
+	last   time.Time
+	shown  int // characters on the terminal's line
+}
+
+// activity is what a worker does.
+type activity struct {
+	running  bool
+	of       int // case
+	began    time.Time
+	fraction float64
+}
+
+func newMeter(out io.Writer, cases []problemCase, o options) *meter {
+	m := &meter{
+		out: out, now: time.Now, cases: cases, seeds: o.seeds,
+		ended: make([]int, len(cases)), spent: make([]float64, len(cases)), active: make([]activity, o.workers),
+	}
+	if f, ok := out.(*os.File); ok && term.IsTerminal(int(f.Fd())) && os.Getenv("TERM") != "dumb" {
+		m.terminal = true
+	}
+	m.began = m.now()
+	return m
+}
+
+// begin notes that a worker takes a run of a case.
+func (m *meter) begin(worker, of int) {
+	m.mu.Lock()
+	defer m.mu.Unlock()
+	m.active[worker] = activity{running: true, of: of, began: m.now()}
+}
+
+// update notes how far a worker's run is.
+func (m *meter) update(worker int, fraction float64) {
+	m.mu.Lock()
+	defer m.mu.Unlock()
+	m.active[worker].fraction = fraction
+	m.show(m.active[worker].of, false)
+}
+
+// end notes that a worker's run is over.
+func (m *meter) end(worker int, r oneRun) {
+	m.mu.Lock()
+	defer m.mu.Unlock()
+	a := &m.active[worker]
+	a.running = false
+	if r.finished {
+		m.ended[a.of]++
+		m.spent[a.of] += r.seconds
+		m.show(a.of, m.ended[a.of] == m.seeds)
+	}
+}
+
+// done takes the line away from a terminal.
+func (m *meter) done() {
+	m.mu.Lock()
+	defer m.mu.Unlock()
+	if m.terminal && m.shown > 0 {
+		fmt.Fprint(m.out, "\r"+strings.Repeat(" ", m.shown)+"\r")
+		m.shown = 0
+	}
+}
+
+// show prints the state of a case if the last line is old enough, or at once.
+func (m *meter) show(of int, once bool) {
+	now := m.now()
+	every := plainEvery
+	if m.terminal {
+		every = terminalEvery
+	}
+	if !once && !m.last.IsZero() && now.Sub(m.last) < every {
+		return
+	}
+	m.last = now
+	line := m.line(of, now)
+	if !m.terminal {
+		fmt.Fprintln(m.out, line)
+		return
+	}
+	n := utf8.RuneCountInString(line)
+	fmt.Fprint(m.out, "\r"+line+strings.Repeat(" ", max(0, m.shown-n)))
+	m.shown = n
+}
+
+// line says how far case number at is, and the whole.
+func (m *meter) line(at int, now time.Time) string {
+	total := 0
+	for _, n := range m.ended {
+		total += n
+	}
+	c := m.cases[at]
+	text := fmt.Sprintf("%s/%d: %d of %d runs; in all %d of %d, %s gone", c.name, c.dim, m.ended[at], m.seeds,
+		total, m.seeds*len(m.cases), clock(now.Sub(m.began)))
+	if left, ok := m.left(now); ok {
+		text += ", about " + clock(left) + " left"
+	}
+	return text
+}
+
+// left estimates the time left. A case that has finished runs needs their mean
+// for each more, one that only has begun some what those seem to take; the others
+// are guessed to need a time that grows as the square of the dimension, on
+// the scale of those that are known.
+func (m *meter) left(now time.Time) (time.Duration, bool) {
+	each := make([]float64, len(m.cases)) // seconds per run
+	gone := make([]float64, len(m.cases)) // runs' worth of work under way
+	var seconds, squares float64
+	for i, c := range m.cases {
+		if m.ended[i] > 0 {
+			each[i] = m.spent[i] / float64(m.ended[i])
+		}
+		for _, a := range m.active {
+			if !a.running || a.of != i {
+				continue
+			}
+			gone[i] += a.fraction
+			if m.ended[i] == 0 && a.fraction > 0.02 {
+				each[i] = max(each[i], now.Sub(a.began).Seconds()/a.fraction)
+			}
+		}
+		if each[i] > 0 {
+			seconds += each[i]
+			squares += float64(c.dim * c.dim)
+		}
+	}
+	if seconds == 0 {
+		return 0, false
+	}
+	var left float64
+	for i, c := range m.cases {
+		if each[i] == 0 {
+			each[i] = seconds / squares * float64(c.dim*c.dim)
+		}
+		left += each[i] * max(0, float64(m.seeds-m.ended[i])-gone[i])
+	}
+	return time.Duration(left / float64(len(m.active)) * float64(time.Second)), true
+}
+
+// clock shows a duration to the second as 9 s, 2:05 or 3:02:05.
+func clock(d time.Duration) string {
+	s := int64(d.Round(time.Second) / time.Second)
+	switch {
+	case s < 60:
+		return fmt.Sprintf("%d s", s)
+	case s < 3600:
+		return fmt.Sprintf("%d:%02d", s/60, s%60)
+	}
+	return fmt.Sprintf("%d:%02d:%02d", s/3600, s/60%60, s%60)
+}
