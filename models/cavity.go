@@ -24,8 +24,12 @@ import (
 // Modes of one (l, m) share a barrier, a k and hence an echo sum; those of
 // different (l, m) do not mix. A mode's resonance takes the sum at
 // omega = 2 pi f > 0 and its tail the sum at omega < 0, which is the conjugate
-// of that for -m at -omega; the signal is real either way. Where the barrier
-// reflects less than 1e-8 the sum is 1.
+// of that for -m at -omega with the echo phase turned round; the signal is real
+// either way. (A phase that is the same at every frequency of a mode's complex
+// amplitude is causal, one that changes its sign at omega = 0 is not. So the tail
+// of a mode 2,-2,0, and the growth in it, meets the surface with the phase opposite
+// to that which the resonance of 2,2,0 meets.) Where the barrier reflects less than
+// 1e-8 the sum is 1.
 //
 // Parameters: mass, spin, start_time, amplitude and phase of each mode, offset,
 // echo_phase, then those of the reflectivity law, then those of the excitation.
