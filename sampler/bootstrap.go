@@ -177,6 +177,19 @@ func (r *resampling) each(workers int, f func(at int, logZ float64, weight []flo
 	wg.Wait()
 }
 
+// spread is the standard error of a statistic from its values in the replicas.
+// It is infinite where a replica had no weight at all: the statistic rests on a
+// few strands.
+func (r *resampling) spread(values []float64) float64 {
+	for _, v := range values {
+		if math.IsNaN(v) || math.IsInf(v, 0) {
+			return math.Inf(1)
+		}
+	}
+	_, sd := meanSD(values)
+	return sd * math.Sqrt(r.swell)
+}
+
 // bootstrapError sets BootstrapError and ErrorTension.
 //
 // Allowance: of the logarithm of the ratio of the two errors, the simulated one
@@ -190,8 +203,7 @@ func (o *Outcome) bootstrapError(workers int) {
 	}
 	logZ := make([]float64, r.most)
 	r.each(workers, func(at int, z float64, _ []float64) { logZ[at] = z })
-	_, sd := meanSD(logZ)
-	o.BootstrapError = sd * math.Sqrt(r.swell)
+	o.BootstrapError = r.spread(logZ)
 	// A likelihood of one value has no error: both are rounding.
 	if rounding := 1e-12 * (1 + math.Abs(o.LogEvidence)); o.BootstrapError < rounding || o.LogEvidenceError < rounding {
 		o.ErrorTension = 0

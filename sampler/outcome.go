@@ -4,8 +4,6 @@ import (
 	"fmt"
 	"math"
 	"strings"
-
-	"knell/internal/random"
 )
 
 // Status says why a run ended.
@@ -170,21 +168,5 @@ func (o *Outcome) EqualWeight(seed uint64, n int) (points [][]float64, index []i
 	if n <= 0 {
 		n = max(1, int(o.EffectiveSamples))
 	}
-	rng := random.New(seed, "equal weight")
-	offset := rng.Float64()
-	var sum float64
-	for i, lw := range o.LogWeight {
-		sum += math.Exp(lw) * float64(n)
-		for len(index) < n && offset+float64(len(index)) < sum {
-			index = append(index, i)
-		}
-	}
-	for last := len(o.LogWeight) - 1; len(index) < n && last >= 0; { // rounding of the sum
-		index = append(index, last)
-	}
-	rng.Shuffle(len(index), func(i, j int) { index[i], index[j] = index[j], index[i] })
-	for _, i := range index {
-		points = append(points, o.Points[i])
-	}
-	return points, index
+	return equalWeight(o.Points, o.LogWeight, seed, n)
 }
