@@ -2,6 +2,7 @@ package main
 
 import (
 	"encoding/json"
+	"fmt"
 	"math"
 	"strings"
 
@@ -32,7 +33,7 @@ func modesCommand() *cli.Command {
 				return &usageError{"modes takes no argument, found " + c.Args().First()}
 			}
 			if len(c.Float64Slice("spin")) == 0 {
-				return &usageError{"modes wants --spin, from 0 to below 1"}
+				return &usageError{fmt.Sprintf("modes wants --spin, from 0 to %g", kerr.MaxSpin)}
 			}
 			mass := c.Float64("mass")
 			if c.IsSet("mass") && !(mass > 0 && !math.IsInf(mass, 1)) {

@@ -164,22 +164,3 @@ func (b *Barrier) Transmission(omega0, domega float64, re, im []float64) error {
 	}
 	return nil
 }
-
-// ReflectionAt returns R and dR/dω at a complex frequency near the real axis, by
-// continuing the local polynomials: R is analytic there, and its poles are the
-// quasi-normal modes. Re ω outside Range is an error that names it. The error
-// grows with the distance from the axis: for l = m = 2 it is 2e-8 of R at a
-// quarter of a polynomial's half-width, 2e-7 at a half, 4e-6 at one
-// (TestContinuedCells). Half-widths are 0.012 or more up to spin 0.9, and 0.003
-// around k = 0 at the largest spin.
-func (b *Barrier) ReflectionAt(omega complex128) (r, slope complex128, err error) {
-	if err := b.check(real(omega)); err != nil {
-		return 0, 0, err
-	}
-	if b.m < 0 {
-		r, slope = b.reflection.continued(-omega)
-		return r, -slope, nil
-	}
-	r, slope = b.reflection.continued(omega)
-	return r, slope, nil
-}

@@ -7,6 +7,7 @@ import (
 	"testing"
 
 	"knell/internal/checktable"
+	"knell/internal/random"
 )
 
 // TestPhysicsBarrierTables compares the tables with amplitudes computed at 60
@@ -75,5 +76,31 @@ func TestPhysicsBarrierTables(t *testing.T) {
 			}
 			table.Worst(fmt.Sprintf("T, l = %d", l), w.transmission, tableTolerance, "testdata/"+file.name)
 		}
+	}
+}
+
+// TestPhysicsTabulatedFlux: |R|² + (ω/k)|T|² = 1 of what a sampler gets. R and T
+// come from tables of their own, each right to tableTolerance.
+func TestPhysicsTabulatedFlux(t *testing.T) {
+	rng := random.New(11, "tabulated flux")
+	table := checktable.New(t, "flux of the tabulated response, |R|² + (ω/k)|T|² - 1 over the larger term")
+	for l := 2; l <= tableMaxL; l++ {
+		worst := 0.0
+		for m := -l; m <= l; m++ {
+			b := newBarrier(t, l, m, Odd)
+			for range 12 {
+				spin := math.Tanh(rng.Float64() * math.Atanh(MaxSpin))
+				if err := b.SetSpin(spin); err != nil {
+					t.Fatal(err)
+				}
+				for range 40 {
+					omega := math.Copysign(0.001+1.998*rng.Float64(), rng.Float64()-0.5)
+					r, tr := cmplx.Abs(one(t, b.Reflection, omega)), cmplx.Abs(one(t, b.Transmission, omega))
+					out := omega / (omega - float64(m)*HorizonFrequency(spin)) * tr * tr
+					worst = max(worst, math.Abs(r*r+out-1)/max(r*r, 1))
+				}
+			}
+		}
+		table.Worst(fmt.Sprintf("l = %d", l), worst, 4*tableTolerance, "conservation of energy, ApJ 193, 443 (1974)")
 	}
 }

@@ -176,118 +176,9 @@ func TestReflectionDoesNotRemember(t *testing.T) {
 		if fresh.SetSpin(spin) != nil || fresh.Reflection(-1.97, 0.04, re, im) != nil || fresh.Transmission(-1.97, 0.04, re, im) != nil {
 			t.Error("a call failed")
 		}
-		if _, _, err := fresh.ReflectionAt(0.3 - 0.001i); err != nil {
-			t.Error(err)
-		}
 	}); n != 0 {
 		t.Errorf("%g allocations per spin, want 0", n)
 	}
-}
-
-// TestReflectionAt compares R at complex frequencies with the slope along the
-// real axis, with the slope across it, and on it with Reflection. Off the axis
-// the reference is a polynomial through values of the direct R on the axis.
-func TestReflectionAt(t *testing.T) {
-	for _, m := range []int{2, -2} {
-		barrier := newBarrier(t, 2, m, Odd)
-		for _, spin := range []float64{0, 0.7, 0.97} {
-			if err := barrier.SetSpin(spin); err != nil {
-				t.Fatal(err)
-			}
-			for _, omega := range []float64{-0.8, -0.31, 0.2, 0.37, 0.55, 0.9} {
-				r, slope, err := barrier.ReflectionAt(complex(omega, 0))
-				if err != nil {
-					t.Fatal(err)
-				}
-				if want := one(t, barrier.Reflection, omega); cmplx.Abs(r/want-1) > walkTolerance {
-					t.Errorf("m=%d a=%g ω=%g: R = %v, want %v", m, spin, omega, r, want)
-				}
-				// The polynomial through the direct R at 17 points; a pole 0.03 off
-				// leaves it an error below 1e-12.
-				const h, middle = 1e-3, 8
-				var v [2*middle + 1]complex128
-				for i := range v {
-					direct, err := BarrierResponse(2, m, spin, omega+h*float64(i-middle), Odd)
-					if err != nil {
-						t.Fatal(err)
-					}
-					v[i] = direct.Reflection
-				}
-				want, wantSlope := lagrangeAt(v[:], middle)
-				wantSlope /= h
-				// Markov's inequality: degree squared times the table's 2e-10, over a
-				// cell's half-width, 0.01 or more at these spins.
-				if off := cmplx.Abs(slope-wantSlope) / cmplx.Abs(want); off > 2e-6 {
-					t.Errorf("m=%d a=%g ω=%g: dR/dω = %v, want %v", m, spin, omega, slope, wantSlope)
-				}
-				for _, below := range []float64{1e-6, -1e-3, 2e-3, -4e-3} {
-					r, slope, err := barrier.ReflectionAt(complex(omega, below))
-					if err != nil {
-						t.Fatal(err)
-					}
-					want, wantSlope := lagrangeAt(v[:], complex(middle, below/h))
-					wantSlope /= h
-					if off := cmplx.Abs(r/want - 1); off > 3e-8 {
-						t.Errorf("m=%d a=%g ω=%g%+gi: R = %v, want %v, off by %.1e", m, spin, omega, below, r, want, off)
-					}
-					if off := cmplx.Abs(slope-wantSlope) / cmplx.Abs(want); off > 2.5e-4 { // Markov, as above
-						t.Errorf("m=%d a=%g ω=%g%+gi: dR/dω = %v, want %v", m, spin, omega, below, slope, wantSlope)
-					}
-				}
-			}
-		}
-	}
-}
-
-// TestContinuedCells: two cells meet at a frequency and must agree beside the real
-// axis as well. How far they part bounds the error there: their errors are
-// independent.
-func TestContinuedCells(t *testing.T) {
-	for _, at := range []struct{ share, tolerance float64 }{{0, 1e-9}, {0.25, 3e-8}, {0.5, 5e-7}, {1, 1e-5}} {
-		worst := 0.0
-		barrier := newBarrier(t, 2, 2, Odd)
-		for _, spin := range []float64{0, 0.3, 0.7, 0.9, 0.99, MaxSpin} {
-			if err := barrier.SetSpin(spin); err != nil {
-				t.Fatal(err)
-			}
-			s := barrier.reflection
-			s.fill(0, len(s.bounds)-1)
-			for i := range len(s.bounds) - 2 {
-				a, b := &s.cells[i], &s.cells[i+1]
-				half := min(1/a.scale, 1/b.scale)
-				for _, sign := range []float64{1, -1} {
-					omega := complex(s.bounds[i+1], sign*at.share*half)
-					x, _ := a.continued(omega)
-					y, _ := b.continued(omega)
-					off := cmplx.Abs(x/y - 1)
-					worst = max(worst, off)
-					if !(off < at.tolerance) {
-						t.Errorf("a=%g ω=%v, %g of a half-width from the axis: cells differ by %.1e", spin, omega, at.share, off)
-					}
-				}
-			}
-		}
-		t.Logf("%g of a half-width from the axis: largest relative difference %.1e", at.share, worst)
-	}
-}
-
-// lagrangeAt returns the polynomial through values at 0, 1, ... and its
-// derivative at x.
-func lagrangeAt(v []complex128, x complex128) (value, slope complex128) {
-	for i, f := range v {
-		weight, change := complex128(1), complex128(0)
-		for j := range v {
-			if j == i {
-				continue
-			}
-			d := complex(float64(i-j), 0)
-			change = (change*(x-complex(float64(j), 0)) + weight) / d
-			weight *= (x - complex(float64(j), 0)) / d
-		}
-		value += f * weight
-		slope += f * change
-	}
-	return value, slope
 }
 
 func TestBarrierRange(t *testing.T) {
@@ -319,9 +210,6 @@ func TestBarrierRange(t *testing.T) {
 		if err := barrier.Transmission(tc.omega0, tc.domega, re, im); err == nil || !strings.Contains(err.Error(), "-2 to -0.001 or 0.001 to 2") {
 			t.Errorf("T%+v: error %v, want one that names the range", tc, err)
 		}
-	}
-	if _, _, err := barrier.ReflectionAt(2.1 - 0.01i); err == nil {
-		t.Error("ReflectionAt(2.1): no error")
 	}
 	if re[0] != 7 || im[2] != 7 {
 		t.Error("a refused call has changed its slices")

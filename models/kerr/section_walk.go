@@ -1,7 +1,5 @@
 package kerr
 
-import "knell/models/kerr/internal/chart"
-
 // walk sets re[j] + i im[j] to the function at ω = omega0 + j domega. All of
 // them lie in the table's range.
 func (s *section) walk(omega0, domega float64, re, im []float64) {
@@ -83,19 +81,4 @@ func shift(to, from *[cellTerms]float64, by float64) {
 			to[j] = s
 		}
 	}
-}
-
-// continued returns the function and its derivative at a complex frequency.
-func (s *section) continued(omega complex128) (value, slope complex128) {
-	return s.cells[s.find(real(omega))].continued(omega)
-}
-
-// continued returns the polynomial and its derivative.
-func (c *cell) continued(omega complex128) (value, slope complex128) {
-	x := complex((real(omega)-c.middle)*c.scale, imag(omega)*c.scale)
-	for i := chart.Degree; i >= 0; i-- {
-		slope = slope*x + value
-		value = value*x + complex(c.re[i], c.im[i])
-	}
-	return value, slope * complex(c.scale, 0)
 }
