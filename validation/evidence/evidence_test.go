@@ -162,7 +162,7 @@ func TestSignalEndsCleanly(t *testing.T) {
 	if cmd.ProcessState.ExitCode() != interrupted {
 		t.Errorf("ended with %v, want status %d", err, interrupted)
 	}
-	for _, s := range []string{"INTERRUPTED", "gaussian    2", "0 runs to judge by"} {
+	for _, s := range []string{"INTERRUPTED", "gaussian    2", "runs to judge by: 0"} {
 		if !strings.Contains(out.String(), s) {
 			t.Errorf("stdout has no %q:\n%s", s, out.String())
 		}

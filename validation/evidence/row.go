@@ -111,7 +111,7 @@ func newRow(c problemCase, o options, runs []oneRun) row {
 		r.add(q.phases)
 	}
 	if open > 0 {
-		r.Faults = append(r.Faults, fmt.Sprintf("%d runs did not converge", open))
+		r.Faults = append(r.Faults, fmt.Sprintf("runs that did not converge: %d", open))
 	}
 	if n := float64(len(pulls)); n > 0 {
 		r.Calls, r.IdealRatio = report.Number(calls/n), report.Number(calls/points)
@@ -126,7 +126,7 @@ func newRow(c problemCase, o options, runs []oneRun) row {
 // judgeZ sets what is known of z and notes faults in it.
 func (r *row) judgeZ(pulls []validation.Pull) {
 	if len(pulls) < 2 {
-		r.Faults = append(r.Faults, fmt.Sprintf("%d runs to judge by, want 2 at least", len(pulls)))
+		r.Faults = append(r.Faults, fmt.Sprintf("runs to judge by: %d, want 2 at least", len(pulls)))
 		return
 	}
 	u := validation.UnitNormal(pulls)

@@ -46,8 +46,8 @@ func TestRowIsJudged(t *testing.T) {
 		{"few, errors quoted at half", madeRuns(12, 0, 2.5, 1, 1), "deviation"},
 		{"ranks that fail too often", madeRuns(100, 0, 1, 2, 1), "ranks"},
 		{"volumes that shrink too fast", madeRuns(100, 0, 1, 1, 1.05), "shrinkages"},
-		{"one run to judge by", madeRuns(1, 0, 1, 1, 1), "1 runs"},
-		{"no run", nil, "0 runs"},
+		{"one run to judge by", madeRuns(1, 0, 1, 1, 1), "judge by: 1"},
+		{"no run", nil, "judge by: 0"},
 	} {
 		r := newRow(c, options{}, tc.runs)
 		faults := strings.Join(r.Faults, "; ")

@@ -71,7 +71,11 @@ func number(x report.Number, places int) string {
 	if !known(x) {
 		return "-"
 	}
-	return fmt.Sprintf("%.*f", places, float64(x))
+	text := fmt.Sprintf("%.*f", places, float64(x))
+	if strings.Trim(text, "-0.") == "" { // no "-0.0000"
+		text = strings.TrimPrefix(text, "-")
+	}
+	return text
 }
 
 func plusMinus(x, e report.Number, format string) string {
@@ -112,7 +116,7 @@ func verdict(r row) string {
 		text += fmt.Sprintf("; calls per point not below %g", r.Aim)
 	}
 	if r.Doubtful > 0 {
-		text += fmt.Sprintf("; %d runs call themselves doubtful", r.Doubtful)
+		text += fmt.Sprintf("; doubtful by their own verdict: %d", r.Doubtful)
 	}
 	return text
 }
