@@ -43,7 +43,10 @@ type Burst struct {
 	cos, sin   []float64 // scratch space
 }
 
-var _ Model = (*Burst)(nil)
+var (
+	_ Model  = (*Burst)(nil)
+	_ Bender = (*Burst)(nil)
+)
 
 // MaxPackets is the largest Settings.Count.
 const MaxPackets = 16
@@ -68,7 +71,7 @@ func describeBurst(s Settings) ([]Parameter, error) {
 			Parameter{Name: name("frequency"), Unit: "Hz", Note: "of the packet's oscillation", Low: 0, High: maxFrequency},
 			Parameter{Name: name("width"), Unit: "s", Note: "standard deviation of the packet's Gaussian envelope", Low: 1e-6, High: maxStart},
 			Parameter{Name: name("ellipticity"), Note: "0 linear, 1 circular as m = 2 from above, -1 as from below", Low: -1, High: 1},
-			Parameter{Name: name("orientation"), Unit: "rad", Note: "of the ellipse in the sky; 0 to pi/2 holds every signal", Low: 0, High: math.Pi, Periodic: true})
+			Parameter{Name: name("orientation"), Unit: "rad", Note: "of the ellipse in the sky; a quarter turn more is the opposite sign", Low: 0, High: math.Pi / 2, Periodic: true})
 	}
 	return list, nil
 }
@@ -97,6 +100,20 @@ func (b *Burst) Clone() Model {
 	twin.cos, twin.sin = make([]float64, b.grid.Count), make([]float64, b.grid.Count)
 	return &twin
 }
+
+// Bent implements Bender.
+func (b *Burst) Bent() []int {
+	list := make([]int, len(b.parameters)/packetSize)
+	for j := range list {
+		list[j] = j*packetSize + 1
+	}
+	return list
+}
+
+// Bend implements Bender. A packet turned by a quarter turn is the same with the
+// opposite sign: a phase that goes back by twice the orientation makes the ends of
+// the orientation's domain one place.
+func (b *Burst) Bend(i int, theta, _ []float64) float64 { return -2 * theta[i*packetSize+6] }
 
 // Fill implements Model.
 func (b *Burst) Fill(theta []float64, h *Polarizations) error {

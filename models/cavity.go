@@ -37,6 +37,7 @@ type Cavity struct {
 	grid          Grid
 	start, length float64
 	spill         float64
+	growing       [][2]int // see waves
 	lead          float64
 	ringing       *ringing
 	law           reflectivity
@@ -154,6 +155,7 @@ func (c *Cavity) prepared() (*Cavity, error) {
 			return nil, err
 		}
 	}
+	c.growing = c.waves()
 	c.surface = &surface{law: c.law}
 	c.reflectivityAt = c.surface.at
 	n := c.grid.Count

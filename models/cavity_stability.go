@@ -36,7 +36,27 @@ func (c *Cavity) setSurface(theta []float64) {
 	c.surface.values, c.surface.temperature = theta[c.lawIndex:c.excitationIndex], kerr.HawkingTemperature(theta[1])
 }
 
-// Stable implements Stability, in some µs for each (l, m) of the modes. It is
+// loudestWave is the l and |m| that a barrier amplifies most, at every spin.
+const loudestWave = 2
+
+// waves lists the (l, m) whose echoes may grow: those of the modes, and the one
+// that is amplified most, whether or not the signal has it. The surface reflects
+// every wave, and noise enough of each is there to grow from.
+func (c *Cavity) waves() [][2]int {
+	var list [][2]int
+	loudest := false
+	for i := range c.groups {
+		l, m := c.groups[i].l, c.groups[i].m
+		list = append(list, [2]int{l, m})
+		loudest = loudest || l == loudestWave && (m == loudestWave || m == -loudestWave)
+	}
+	if !loudest {
+		list = append(list, [2]int{loudestWave, loudestWave})
+	}
+	return list
+}
+
+// Stable implements Stability, in some µs for each of waves. It is
 // sufficient for a cavity without a growing mode, whatever the surface's place and
 // phase, and not necessary: the loudest frequency may lie between two modes.
 // The (l, -m) partners are as stable as the modes. The first call of an (l, m)
@@ -46,8 +66,8 @@ func (c *Cavity) Stable(theta []float64) (bool, error) {
 		return true, nil
 	}
 	c.setSurface(theta)
-	for i := range c.groups {
-		gain, _, err := kerr.MaxLoop(c.groups[i].l, c.groups[i].m, theta[1], c.reflectivityAt)
+	for _, w := range c.growing {
+		gain, _, err := kerr.MaxLoop(w[0], w[1], theta[1], c.reflectivityAt)
 		if err != nil || gain > 1 {
 			return false, err
 		}
@@ -56,7 +76,7 @@ func (c *Cavity) Stable(theta []float64) (bool, error) {
 }
 
 // growthTime is the e-folding time in s of the fastest growing mode of the cavity
-// over all groups: +Inf if none grows, NaN where kerr.FastestGrowth has no answer,
+// over all of waves: +Inf if none grows, NaN where kerr.FastestGrowth has no answer,
 // which is a surface so near to the light ring that there is no cavity. Then the
 // rest of what is derived still stands.
 func (c *Cavity) growthTime(theta []float64) float64 {
@@ -66,8 +86,8 @@ func (c *Cavity) growthTime(theta []float64) float64 {
 	c.setSurface(theta)
 	x0 := kerr.SurfaceTortoise(theta[1], c.lnDistance(theta))
 	rate := 0.0
-	for i := range c.groups {
-		omega, growing, err := kerr.FastestGrowth(c.groups[i].l, c.groups[i].m, c.parity, theta[1], x0, theta[c.echoPhaseIndex], c.reflectivityAt)
+	for _, w := range c.growing {
+		omega, growing, err := kerr.FastestGrowth(w[0], w[1], c.parity, theta[1], x0, theta[c.echoPhaseIndex], c.reflectivityAt)
 		if err != nil {
 			return math.NaN()
 		}

@@ -133,3 +133,25 @@ func ExampleCavity_Stable() {
 	fmt.Println(m.(Stability).Stable(theta))
 	// Output: false <nil>
 }
+
+// A signal of another wave alone does not make a surface stable: what (2,2) gains
+// from it grows all the same. Bounds of (2,2) as above.
+func TestStabilityOfOtherWaves(t *testing.T) {
+	for _, modes := range [][]string{{"3,3,0"}, {"2,0,0"}, {"2,-2,0"}} {
+		s := Settings{Model: "cavity", Modes: modes, Reflectivity: "constant", Grid: Grid{First: 60, Count: 100, Step: 1}, Length: 1}
+		m := newTestModel(t, s)
+		for reflectivity, want := range map[float64]bool{0.9693: true, 0.9694: false} {
+			theta := namedTheta(t, m, modeValues(modes, map[string]float64{"spin": 0.9, "reflectivity": reflectivity}))
+			if stable, err := m.(Stability).Stable(theta); err != nil || stable != want {
+				t.Errorf("%v at %g: stable %v, want %v (%v)", modes, reflectivity, stable, want, err)
+			}
+		}
+		out := make([]float64, len(m.Derived()))
+		if err := m.Derive(namedTheta(t, m, modeValues(modes, map[string]float64{"spin": 0.9, "reflectivity": 1})), out); err != nil {
+			t.Fatal(err)
+		}
+		if growth := out[len(out)-1]; !(growth > 0 && growth < 1e3) {
+			t.Errorf("%v: a perfect surface grows within %g s, want some seconds", modes, growth)
+		}
+	}
+}

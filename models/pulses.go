@@ -1,6 +1,10 @@
 package models
 
-import "math"
+import (
+	"math"
+
+	"knell/internal/constants"
+)
 
 // Pulses is a ringdown followed by copies of itself, for which no surface is
 // modelled: the n-th copy, n = 1, 2, ..., begins at
@@ -29,7 +33,10 @@ type Pulses struct {
 	sums          sums
 }
 
-var _ Model = (*Pulses)(nil)
+var (
+	_ Model  = (*Pulses)(nil)
+	_ Bender = (*Pulses)(nil)
+)
 
 func describePulses(s Settings) ([]Parameter, error) {
 	if _, err := checkAngular(s.Angular); err != nil {
@@ -80,7 +87,7 @@ func (p *Pulses) Derive(theta, out []float64) error {
 	if err := p.ringing.derive(theta[0], theta[1], out); err != nil {
 		return err
 	}
-	at := 3 + 2*len(p.ringing.tracks)
+	at := p.ownIndex()
 	out[len(out)-1] = theta[at] * theta[at+1]
 	return nil
 }
@@ -90,6 +97,22 @@ func (p *Pulses) Clone() Model {
 	twin := *p
 	twin.sums = newSums(p.grid.Count)
 	return &twin
+}
+
+// ownIndex is where pulse_delay stands; the others follow it.
+func (p *Pulses) ownIndex() int { return 3 + 2*len(p.ringing.tracks) }
+
+// Bent implements Bender.
+func (p *Pulses) Bent() []int { return []int{p.ownIndex() + 4} }
+
+// Bend implements Bender. The data know a copy's phase at a fixed time, that is
+// its turn plus its delay times the mode's frequency.
+func (p *Pulses) Bend(_ int, theta, centre []float64) float64 {
+	omega, _, _, err := p.ringing.tracks[0].At(centre[1])
+	if err != nil {
+		return 0
+	}
+	return -real(omega) / (centre[0] * constants.SolarMassSeconds) * theta[p.ownIndex()]
 }
 
 // Fill implements Model.

@@ -30,13 +30,7 @@ import (
 type ringing struct {
 	labels []modeLabel
 	tracks []*kerr.ModeTrack
-	// spherical holds each mode's angular factors where they are those of the
-	// sphere; nil means spheroidal ones, which the tracks hold.
-	spherical []angularFactors
 }
-
-// angularFactors are S at the inclination and at pi minus it.
-type angularFactors struct{ north, south complex128 }
 
 // modeLabel is a mode's "l,m,n" and the name its parameters carry.
 type modeLabel struct {
@@ -96,23 +90,15 @@ func newRinging(modes []string, inclination float64, angular string) (*ringing, 
 	}
 	r := &ringing{labels: labels}
 	for _, label := range labels {
-		track, err := kerr.NewModeTrack(label.l, label.m, label.n, inclination)
+		follow := kerr.NewModeTrack
+		if spherical {
+			follow = kerr.NewSphericalModeTrack
+		}
+		track, err := follow(label.l, label.m, label.n, inclination)
 		if err != nil {
 			return nil, fmt.Errorf("models: mode %s: %w", label.name, err)
 		}
 		r.tracks = append(r.tracks, track)
-		if !spherical {
-			continue
-		}
-		north, err := kerr.Spheroidal(label.l, label.m, 0, inclination)
-		if err != nil {
-			return nil, fmt.Errorf("models: mode %s: %w", label.name, err)
-		}
-		south, err := kerr.Spheroidal(label.l, label.m, 0, math.Pi-inclination)
-		if err != nil {
-			return nil, fmt.Errorf("models: mode %s: %w", label.name, err)
-		}
-		r.spherical = append(r.spherical, angularFactors{north, south})
 	}
 	return r, nil
 }
@@ -180,9 +166,6 @@ func (r *ringing) wave(i int, mass, spin, amplitude, phase float64) (wave, error
 	omega, north, south, err := r.tracks[i].At(spin)
 	if err != nil {
 		return wave{}, err
-	}
-	if r.spherical != nil {
-		north, south = r.spherical[i].north, r.spherical[i].south
 	}
 	scale := mass * constants.SolarMassSeconds
 	sin, cos := math.Sincos(phase)
