@@ -51,7 +51,7 @@ func parseModes(modes []string) ([]modeLabel, error) {
 		}
 		// At spin 0 the solution is quick, and says whether the mode exists.
 		if _, err := kerr.QuasiNormalMode(l, m, n, 0); err != nil {
-			return nil, &SettingError{"modes", strconv.Quote(text), "a mode that is known (" + err.Error() + ")"}
+			return nil, &SettingError{"modes", strconv.Quote(text), "a mode that is known (" + strings.TrimPrefix(err.Error(), "kerr: ") + ")"}
 		}
 		label := modeLabel{l, m, n, strings.ReplaceAll(fmt.Sprintf("%d%d%d", l, m, n), "-", "m")}
 		for _, other := range labels {

@@ -3,6 +3,7 @@ package event
 import (
 	"errors"
 	"fmt"
+	"slices"
 	"strings"
 
 	"knell/models"
@@ -53,6 +54,10 @@ func (d *decoder) assign(h *Hypothesis, t *table, c *Config, shared, own map[str
 			}
 			prior = NamedPrior{uniform, t.path}
 		default:
+			if key := misspelt([]map[string]NamedPrior{own, shared}, list, p.Name, family); key != "" {
+				d.fail(key, "a prior", fmt.Sprintf("a prior under a parameter's name; did you mean %s?", p.Name))
+				return
+			}
 			key := p.Name
 			if family != p.Name {
 				key += " or, for all of its kind, " + family
@@ -86,6 +91,45 @@ func familyOf(name string) string {
 		return name[:i]
 	}
 	return name
+}
+
+// misspelt looks for a prior under a name that no parameter of the list has but
+// that is nearly the one or the other name wanted, and returns its key or "".
+func misspelt(from []map[string]NamedPrior, list []models.Parameter, wanted ...string) string {
+	for _, priors := range from {
+		for _, name := range sortedKeys(priors) {
+			taken := slices.ContainsFunc(list, func(p models.Parameter) bool { return p.Name == name || familyOf(p.Name) == name })
+			for _, w := range wanted {
+				if !taken && nearly(name, w) {
+					return priors[name].Key
+				}
+			}
+		}
+	}
+	return ""
+}
+
+// nearly says whether two names differ by at most two letters put in, left out or
+// changed, and by less than half of the shorter one.
+func nearly(a, b string) bool {
+	row := make([]int, len(b)+1)
+	for j := range row {
+		row[j] = j
+	}
+	for i := range len(a) {
+		before := row[0]
+		row[0] = i + 1
+		for j := range len(b) {
+			cost := before
+			if a[i] != b[j] {
+				cost++
+			}
+			before = row[j+1]
+			row[j+1] = min(cost, row[j]+1, row[j+1]+1)
+		}
+	}
+	edits := row[len(b)]
+	return edits <= 2 && 2*edits < min(len(a), len(b))
 }
 
 // setting turns a model's complaint into one that names the key.

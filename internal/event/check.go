@@ -47,6 +47,9 @@ func (p *Prepared) Check() Summary {
 			periodic := q.Periodic && isFullCircle(prior, q)
 			entry.Priors = append(entry.Priors, PriorSummary{q.Name, q.Unit, fmt.Sprint(prior), periodic})
 		}
+		if h.Hypothesis.Stable {
+			s.Notes = append(s.Notes, fmt.Sprintf("stable = true leaves %.1f %% of the prior of %s", 100*h.allowed.mass, h.Name))
+		}
 		s.Hypotheses = append(s.Hypotheses, entry)
 	}
 	return s

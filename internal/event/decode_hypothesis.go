@@ -57,6 +57,14 @@ func (d *decoder) checkInjection(c *Config) {
 	known := map[string]bool{}
 	for _, p := range list {
 		known[p.Name] = true
+	}
+	// A misspelt name before the one that is missing because of it.
+	for _, name := range sortedKeys(c.Injection.Values) {
+		if !known[name] {
+			d.fail("injection.values."+name, fmt.Sprint(c.Injection.Values[name]), "a parameter of the model "+c.Injection.Model+": "+names(list))
+		}
+	}
+	for _, p := range list {
 		v, given := c.Injection.Values[p.Name]
 		key := "injection.values." + p.Name
 		switch {
@@ -64,11 +72,6 @@ func (d *decoder) checkInjection(c *Config) {
 			d.fail(key, "nothing", fmt.Sprintf("a number (%s)", p.Note))
 		case given && !(v >= p.Low && v <= p.High):
 			d.fail(key, fmt.Sprint(v), fmt.Sprintf("%g to %g", p.Low, p.High))
-		}
-	}
-	for _, name := range sortedKeys(c.Injection.Values) {
-		if !known[name] {
-			d.fail("injection.values."+name, fmt.Sprint(c.Injection.Values[name]), "a parameter of the model "+c.Injection.Model+": "+names(list))
 		}
 	}
 }

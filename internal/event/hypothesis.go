@@ -118,8 +118,8 @@ func isFullCircle(p priors.Prior, of models.Parameter) bool {
 // target is a hypothesis as the sampler sees it, for one goroutine.
 type target struct {
 	*hypothesis
-	model   models.Model // its own clone
-	stabler stabler      // the same, if it can be unstable
+	model   models.Model     // its own clone
+	stabler models.Stability // the same, if it can be unstable
 	worker  *likelihood.Worker
 	theta   []float64
 	h       *models.Polarizations
@@ -137,7 +137,7 @@ func (h *hypothesis) target() *target {
 		theta:      make([]float64, len(h.model.Parameters())),
 		h:          models.NewPolarizations(h.likelihood.Grid().Count),
 	}
-	t.stabler, _ = t.model.(stabler)
+	t.stabler, _ = t.model.(models.Stability)
 	return t
 }
 

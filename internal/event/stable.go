@@ -5,16 +5,7 @@ import (
 	"math"
 
 	"knell/internal/random"
-	"knell/models"
 )
-
-// stabler is a model that can be unstable: a cavity whose echoes grow.
-type stabler interface {
-	models.Model
-	// Stable says whether no echo at theta is louder than the one before, at
-	// any frequency.
-	Stable(theta []float64) (bool, error)
-}
 
 // The switch that excludes unstable points cuts a piece out of the prior. What is
 // left has to be a density again, so its mass divides the evidence. The mass is

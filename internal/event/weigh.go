@@ -100,13 +100,21 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 	return w, posteriors, failure
 }
 
+// fewSamples is the effective number of posterior samples below which the ends of
+// a central 90 % interval, with a twentieth of the samples beyond each, are those
+// of a few points.
+const fewSamples = 60
+
 // cautions are the doubts particular to this result; report adds what holds of
 // every evidence ratio.
 func cautions(w *report.Weighing) []string {
 	var list []string
 	for _, h := range w.Hypotheses {
 		if h.Partial {
-			list = append(list, fmt.Sprintf("%s did not finish: its evidence, and every ratio with it, would still change by more than the error", h.Name))
+			list = append(list, fmt.Sprintf("%s did not finish: its evidence, and every ratio with it, is what was reached and may still change by more than the error says", h.Name))
+		}
+		if n := float64(h.EffectiveSamples); n < fewSamples {
+			list = append(list, fmt.Sprintf("the posterior of %s rests on %.2g effective samples: its medians and intervals mean little", h.Name, n))
 		}
 	}
 	for _, h := range w.Hypotheses {

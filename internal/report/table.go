@@ -48,10 +48,17 @@ func writeRatios(out io.Writer, w *Weighing) error {
 	if len(w.Ratios) == 0 {
 		return nil
 	}
+	unfinished := map[string]bool{}
+	for _, h := range w.Hypotheses {
+		unfinished[h.Name] = h.Partial
+	}
 	fmt.Fprint(out, "\nRatios\n")
 	for _, r := range w.Ratios {
-		fmt.Fprintf(out, "  %s over %s: ln B = %s (%s)\n", r.For, r.Against,
-			withError(r.LogBayesFactor, r.Error), odds(r))
+		words := odds(r)
+		if unfinished[r.For] || unfinished[r.Against] {
+			words = "not final: a run did not finish"
+		}
+		fmt.Fprintf(out, "  %s over %s: ln B = %s (%s)\n", r.For, r.Against, withError(r.LogBayesFactor, r.Error), words)
 	}
 	return nil
 }
