@@ -12,6 +12,7 @@ import (
 func TestBootstrapErrorIsCalibrated(t *testing.T) {
 	const n, sigmas = 20, 4
 	var z, tension []float64
+	phaseP := map[string][]float64{}
 	for _, p := range []*problem{gaussian(3, 0.5), twoModes(3, 0.03), plateau(), hollow()} {
 		var own, linear []float64
 		for seed := range uint64(n) {
@@ -21,6 +22,16 @@ func TestBootstrapErrorIsCalibrated(t *testing.T) {
 			}
 			own = append(own, (o.LogEvidence-p.want)/o.BootstrapError)
 			tension = append(tension, o.ErrorTension)
+			var ranks int64
+			for _, ph := range o.Phases {
+				ranks += ph.Ranks
+				if ph.Ranks >= 100 {
+					phaseP[ph.Name] = append(phaseP[ph.Name], ph.InsertionRankP)
+				}
+			}
+			if ranks != int64(len(o.ranks)) {
+				t.Errorf("%s: %d ranks in the phases, %d in all", p.name, ranks, len(o.ranks))
+			}
 			var sum, two float64
 			for _, x := range o.strandInfluence() {
 				sum += x
@@ -45,6 +56,14 @@ func TestBootstrapErrorIsCalibrated(t *testing.T) {
 		}
 	}
 	tally{z: z}.check(t, &problem{name: "all problems by bootstrap"}, sigmas)
+	for _, name := range methodNames[1:] {
+		if p := phaseP[name]; len(p) > 0 {
+			t.Logf("insertion ranks of %d phases of %s: KS p of their p-values %.3f", len(p), name, uniformP(p))
+			if uniformP(p) < 1e-3 {
+				t.Errorf("p-values of the ranks of %s are not uniform: p = %.2g", name, uniformP(p))
+			}
+		}
+	}
 	mean, sd := meanSD(tension)
 	t.Logf("tension of the two errors over %d runs: mean %+.2f, sd %.2f, largest %.2f", len(tension), mean, sd, max(slices.Max(tension), -slices.Min(tension)))
 	// A shift of half a standard error would let 2e-4 of runs beyond 4; the

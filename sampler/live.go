@@ -82,6 +82,7 @@ func (r *runner) finish() {
 	o := r.out
 	if m := r.memory; m.peak > doubtfulMemory {
 		o.note("slices of %.0f steps still remember their start (correlation %.2f): use more live points and compare", mostSteps*m.least, m.peak)
+		o.sticky = true
 	}
 	for i := range o.LogLikelihood {
 		o.Points = append(o.Points, r.flat[i*r.dim:(i+1)*r.dim:(i+1)*r.dim])

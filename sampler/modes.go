@@ -41,8 +41,8 @@ type Mode struct {
 // is by which mode's live points are nearest.
 //
 // At each of a row of likelihoods the live points are a uniform sample of the
-// region above it. They are linked each to its k nearest, in the metric of their
-// covariance; a region has come apart when the links do. For a uniform sample of
+// region above it. They are linked each to its k nearest, in the metric of how
+// neighbours lie about one another; a region has come apart when the links do. For a uniform sample of
 // a connected region this has a probability of about n exp(-0.81 k) even along a
 // line, the worst case: that n Exp(1) gap be longer than the k gaps to its left,
 // and than the k to its right, is at most the largest of

@@ -122,9 +122,10 @@ func (o *Outcome) unfair() string {
 	whole := min(o.InsertionRankP, o.InsertionRankBlockP)
 	worst, least, tested := -1, 1.0, 0.0
 	for i, p := range o.Phases {
-		if p.Ranks > 0 {
-			tested++
+		if p.Ranks == 0 {
+			continue
 		}
+		tested++
 		if q := min(p.InsertionRankP, p.InsertionRankBlockP); q < least {
 			worst, least = i, q
 		}

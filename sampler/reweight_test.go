@@ -15,7 +15,7 @@ import (
 //
 // (the product of two Gaussians).
 func TestReweightToAGaussianPrior(t *testing.T) {
-	const n, sigmas, dim, s, m, w = 24, 4, 3, 0.05, 0.53, 0.06
+	const n, sigmas, dim, s, m, w = 20, 4, 3, 0.05, 0.53, 0.06
 	p := gaussian(dim, 0)
 	logNormal := func(x, at, width float64) float64 {
 		return -0.5*(x-at)*(x-at)/(width*width) - math.Log(width*math.Sqrt(2*math.Pi))
@@ -24,7 +24,7 @@ func TestReweightToAGaussianPrior(t *testing.T) {
 	wantMean := (0.5/(s*s) + m/(w*w)) / (1/(s*s) + 1/(w*w))
 	var z, ratio, mean []float64
 	for seed := range uint64(n) {
-		o := runOf(t, p, 400+seed, 200)
+		o := runOf(t, p, 400+seed, 150)
 		post, err := o.ReweightBy(func(u []float64) float64 {
 			var sum float64
 			for _, x := range u {

@@ -102,7 +102,7 @@ func TestStrandsMakeUpTheRun(t *testing.T) {
 
 // Two halves of one run are runs, and independent.
 func TestHalvesAreIndependentRuns(t *testing.T) {
-	const n, sigmas = 24, 4
+	const n, sigmas = 16, 4
 	p := gaussian(3, 0.5)
 	var z, apart []float64
 	for seed := range uint64(n) {
