@@ -35,9 +35,11 @@ func writeEvidences(out io.Writer, w *Weighing) error {
 		left: 2, last: true, pad: "  ",
 	}
 	for _, h := range w.Hypotheses {
+		// What a verdict gives as its reason stands among the doubts.
+		verdict, _, _ := strings.Cut(h.Verdict, ":")
 		g.rows = append(g.rows, []string{
 			h.Name, h.Model, fmt.Sprint(h.Dimensions), withError(h.LogEvidenceOver, h.LogEvidenceError),
-			decimals(h.Information, 1), thousands(float64(h.Calls)), decimals(h.Seconds, 1), h.Verdict,
+			decimals(h.Information, 1), thousands(float64(h.Calls)), decimals(h.Seconds, 1), verdict,
 		})
 	}
 	fmt.Fprint(out, "\nEvidence (natural logarithms)\n")
@@ -157,6 +159,9 @@ func orNever(x Number) string {
 func writeCautions(out io.Writer, w *Weighing) error {
 	var run []string
 	for _, h := range w.Hypotheses {
+		if _, reason, found := strings.Cut(h.Verdict, ": "); found {
+			run = append(run, h.Name+": "+reason)
+		}
 		for _, warning := range h.Warnings {
 			run = append(run, h.Name+": "+warning)
 		}

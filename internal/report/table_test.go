@@ -129,3 +129,16 @@ func TestIntervalOfATimeThatNeverComes(t *testing.T) {
 		}
 	}
 }
+
+// A verdict's reason would make the table too wide: it stands among the doubts.
+func TestVerdictInTheTable(t *testing.T) {
+	w := &Weighing{Event: "x", Hypotheses: []Hypothesis{{Name: "horizon", Verdict: "doubtful: few live points: use more"}}}
+	var out bytes.Buffer
+	if err := Table(&out, w); err != nil {
+		t.Fatal(err)
+	}
+	evidence, doubts, found := strings.Cut(out.String(), "Doubts about this run")
+	if !found || !strings.Contains(evidence, " doubtful\n") || !strings.Contains(doubts, "horizon: few live points: use more") {
+		t.Errorf("got\n%s", out.String())
+	}
+}
