@@ -17,6 +17,7 @@ type problemCase struct {
 	newTarget func() (sampler.Target, error)
 	// logVolume is ln of the prior volume above a log-likelihood, where it is known.
 	logVolume func(logL float64) (float64, bool)
+	remaining float64 // sampler.Settings.Remaining, 0 for its default
 	most      float64 // calls per accepted point aimed at; 0 for no aim
 }
 
@@ -48,6 +49,7 @@ func (o options) cases(ctx context.Context) ([]problemCase, error) {
 				return nil, err
 			}
 			k.truth, k.source, k.periodic, k.logVolume = p.Truth, p.Source, p.Periodic, p.LogVolume
+			k.remaining = p.Remaining
 			k.newTarget = func() (sampler.Target, error) { return p, nil }
 		}
 		cs = append(cs, k)

@@ -29,6 +29,8 @@ type row struct {
 	Seeds  int           `json:"seeds"` // finished
 	Truth  report.Number `json:"truth"`
 	Source string        `json:"source"`
+	// Remaining is given where the runs were told to go on further than by default.
+	Remaining float64 `json:"remaining,omitempty"`
 
 	MeanZ      report.Number `json:"mean_z"`
 	MeanZError report.Number `json:"mean_z_error"`
@@ -70,7 +72,7 @@ type drawing struct {
 func newRow(c problemCase, o options, runs []oneRun) row {
 	nan := report.Number(math.NaN())
 	r := row{
-		Name: c.name, Dim: c.dim, Truth: report.Number(c.truth), Source: c.source, Aim: c.most,
+		Name: c.name, Dim: c.dim, Truth: report.Number(c.truth), Source: c.source, Remaining: c.remaining, Aim: c.most,
 		MeanZ: nan, MeanZError: nan, MeanZLimit: nan, StdZ: nan, StdZError: nan, StdZLow: nan, StdZHigh: nan,
 		Difference: nan, Error: nan, Calls: nan, IdealRatio: nan, RankP: nan,
 		Shrinkage: nan, ShrinkageError: nan, ShrinkageP: nan, Seconds: nan,

@@ -73,6 +73,7 @@ func runOnce(ctx context.Context, c problemCase, o options, index int, progress 
 		Seed:       random.New(o.seed, "evidence "+c.name, uint64(c.dim), uint64(index)).Uint64(),
 		LivePoints: o.live,
 		Periodic:   c.periodic,
+		Remaining:  c.remaining,
 		Workers:    1,
 		Progress:   progress,
 	})

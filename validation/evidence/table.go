@@ -115,6 +115,9 @@ func verdict(r row) string {
 	if r.Aim > 0 && float64(r.IdealRatio) >= r.Aim {
 		text += fmt.Sprintf("; calls per point not below %g", r.Aim)
 	}
+	if r.Remaining > 0 {
+		text += fmt.Sprintf("; told to go on to %.1g nat remaining", r.Remaining)
+	}
 	if r.Doubtful > 0 {
 		text += fmt.Sprintf("; doubtful by their own verdict: %d", r.Doubtful)
 	}

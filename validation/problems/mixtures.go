@@ -32,9 +32,20 @@ func mixture(dim int, massA float64, a ball, massB float64, b ball) *Problem {
 // spikeAndSlab is a spike of width 0.01 and mass 100 in a slab of width 0.1 and
 // mass 1, both in the middle of the cube. In 20 dimensions (Bayesian Anal. 1,
 // 833 (2006), from memory) likelihood against volume has a phase transition: the
-// spike holds 99 % of Z = 101 in 1e-20 of the slab's volume.
+// spike holds 99 % of Z = 101 and stands out of the slab in a volume of e^-50 alone,
+// when the slab's own evidence has all been gathered at e^-30. Remaining is what
+// the slab has left within the spike's volume.
 func spikeAndSlab(dim int) *Problem {
-	return mixture(dim, 100, ball{0.5, 0.01}, 1, ball{0.5, 0.1})
+	const mass, narrow, wide = 100.0, 0.01, 0.1
+	p := mixture(dim, mass, ball{0.5, narrow}, 1, ball{0.5, wide})
+	d := float64(dim)
+	// The spike's density is above the slab's within r: mass N(r; narrow) = N(r; wide).
+	r2 := 2 * (math.Log(mass) + d*math.Log(wide/narrow)) / (1/(narrow*narrow) - 1/(wide*wide))
+	left := math.Exp(logBall(dim) + 0.5*d*math.Log(r2) + d*logNormal(0, wide))
+	if left < 0.001 {
+		p.Remaining = left
+	}
+	return p
 }
 
 // twoModes is a wide mode of mass 0.3 at 0.4 and one of mass 0.7 at 0.8 that is

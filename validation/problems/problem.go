@@ -13,6 +13,12 @@ type Problem struct {
 	Source   string  // where Truth comes from
 	Periodic []bool  // which coordinates are periodic; nil for none
 
+	// Remaining is how little evidence may remain, as ln(1 + Z'/Z) in nats with Z'
+	// judged by the points at hand, when a run may end; 0 for the sampler's default.
+	// It is set where evidence waits in a volume that no point can have seen by
+	// then: a run has to be told of it.
+	Remaining float64
+
 	dim    int
 	logL   func(u []float64) float64
 	volume func(logL float64) float64 // ln of the volume above logL, or NaN; nil if never known

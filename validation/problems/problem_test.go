@@ -115,6 +115,22 @@ func TestMostlyZeroIsZeroOutsideItsCorner(t *testing.T) {
 	}
 }
 
+// In 20 dimensions the volumes by a route of their own: the ball of radius r has
+// π^10/10! r^20, and on its surface spike and slab are equal.
+func TestSpikeNeedsToBeToldOf(t *testing.T) {
+	r := math.Sqrt(2 * (math.Log(100) + 20*math.Log(10)) / (1e4 - 1e2))
+	spike := math.Log(100) - 0.5*r*r/1e-4 - 20*math.Log(0.01)
+	slab := -0.5*r*r/1e-2 - 20*math.Log(0.1)
+	near(t, "spike over slab at their meeting", spike-slab, 0, 1e-9)
+	volume := math.Pow(math.Pi, 10) / 3628800 * math.Pow(r, 20)
+	want := volume / math.Pow(2*math.Pi*0.01, 10)
+	got := problem(t, "spike-and-slab", 20).Remaining
+	near(t, "ln Remaining", math.Log(got), math.Log(want), 1e-9)
+	if low := problem(t, "spike-and-slab", 2).Remaining; low != 0 {
+		t.Errorf("in 2 dimensions Remaining = %g, want the default, 0", low)
+	}
+}
+
 func TestNewRefuses(t *testing.T) {
 	for _, tc := range []struct {
 		name string
