@@ -80,9 +80,9 @@ func routeProblems() []*problem {
 // look like a unit normal. The gaussian in 10 dimensions has more live points for
 // the reason Bridge states.
 func TestRoutesAreCalibrated(t *testing.T) {
-	n := 8
+	n, sigmas := 8, 3.0
 	if *long {
-		n = *seeds
+		n, sigmas = *seeds, 4 // as TestLong
 	}
 	for _, p := range routeProblems() {
 		if !strings.HasPrefix(fmt.Sprintf("%s/%d", p.name, p.dim), *only) {
@@ -116,7 +116,7 @@ func TestRoutesAreCalibrated(t *testing.T) {
 			mean, sd := meanSD(y[i].z)
 			t.Logf("%-14s %2d %-10s %d seeds: pull %+.2f ± %.2f, sd %.2f, error %.4f, effective %4.0f, components %.1f, warnings %.0f, apart from the run %.0f",
 				p.name, p.dim, route.name, n, mean, 1/math.Sqrt(float64(n)), sd, y[i].err, size[i], components[i], warned[i], apart[i])
-			y[i].check(t, &problem{name: p.name + ", " + route.name, dim: p.dim}, 3)
+			y[i].check(t, &problem{name: p.name + ", " + route.name, dim: p.dim}, sigmas)
 			if y[i].err > 0.03 {
 				t.Errorf("%s/%d, %s: mean error %.3f nat, want less than 0.03", p.name, p.dim, route.name, y[i].err)
 			}

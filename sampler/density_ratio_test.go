@@ -76,9 +76,9 @@ func ratioCases() []ratioCase {
 // TestSavageDickeyIsCalibrated: over seeds, (estimate - truth)/error must look
 // like a unit normal.
 func TestSavageDickeyIsCalibrated(t *testing.T) {
-	n := 8
+	n, sigmas := 8, 3.0
 	if *long {
-		n = *seeds
+		n, sigmas = *seeds, 4 // as TestLong
 	}
 	for _, c := range ratioCases() {
 		var y tally
@@ -103,7 +103,7 @@ func TestSavageDickeyIsCalibrated(t *testing.T) {
 		mean, sd := meanSD(y.z)
 		t.Logf("%-40s %d seeds: pull %+.2f ± %.2f, sd %.2f, error %.4f, effective %4.0f, near %4.0f, warnings %d",
 			c.name, n, mean, 1/math.Sqrt(float64(n)), sd, y.err, size, near, warned)
-		y.check(t, &problem{name: c.name}, 3)
+		y.check(t, &problem{name: c.name}, sigmas)
 	}
 }
 
