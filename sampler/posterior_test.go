@@ -2,6 +2,8 @@ package sampler
 
 import (
 	"math"
+	"reflect"
+	"runtime"
 	"slices"
 	"testing"
 )
@@ -144,6 +146,30 @@ func TestPosteriorRefusesBadInput(t *testing.T) {
 	} {
 		if f() == nil {
 			t.Errorf("%s: no error", name)
+		}
+	}
+}
+
+func TestPosteriorBitsDoNotDependOnProcessors(t *testing.T) {
+	o := runOf(t, twoModes(3, 0.03), 1, 150)
+	var want []any
+	for _, n := range []int{1, 2, 5} {
+		before := runtime.GOMAXPROCS(n)
+		modes, of := o.Modes()
+		q, err := o.Posterior().Quantiles(column(o, 0), 0.1, 0.5)
+		if err != nil {
+			t.Fatal(err)
+		}
+		p, err := o.ReweightBy(func(u []float64) float64 { return u[0] })
+		if err != nil {
+			t.Fatal(err)
+		}
+		runtime.GOMAXPROCS(before)
+		got := []any{modes, of, q, p.LogEvidence, p.LogRatio}
+		if want == nil {
+			want = got
+		} else if !reflect.DeepEqual(got, want) {
+			t.Errorf("%d processors give other numbers than 1: %+v, %+v", n, got, want)
 		}
 	}
 }
