@@ -74,6 +74,11 @@ func merge(outcomes []*Outcome, workers int) (*Outcome, error) {
 		strands.take(m, next, h)
 		head[next]++
 	}
+	// Where likelihoods tie across parts, the order of the ties is arbitrary and the
+	// sum above depends on it; the births say which points were live.
+	if m.hasStrands() {
+		m.LiveCount = liveCounts(m.LogLikelihood, m.Birth)
+	}
 	m.weigh(workers)
 	m.bootstrapError(workers)
 	m.compareRuns(outcomes)

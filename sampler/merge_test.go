@@ -73,3 +73,31 @@ func TestMergedRunsAreOneRun(t *testing.T) {
 		t.Error("merging one outcome changes it")
 	}
 }
+
+// Runs that share a plateau die on it together, and each refills past it on its
+// own: a live number that depends on the order of the ties would count too many.
+func TestMergedPlateau(t *testing.T) {
+	p := plateau()
+	const merges, parts = 12, 4
+	var z [merges]float64
+	for i := range z {
+		var list []*Outcome
+		for j := range parts {
+			o, err := Run(context.Background(), p.target, Settings{Seed: uint64(900 + i*parts + j), LivePoints: 100})
+			if err != nil {
+				t.Fatal(err)
+			}
+			list = append(list, o)
+		}
+		m, err := Merge(list...)
+		if err != nil {
+			t.Fatal(err)
+		}
+		z[i] = (m.LogEvidence - p.want) / m.LogEvidenceError
+	}
+	mean, sd := meanSD(z[:])
+	t.Logf("z = %.2f, standard deviation %.2f over %d merges", mean, sd, merges)
+	if math.Abs(mean) > 3.5/math.Sqrt(merges) {
+		t.Errorf("mean z = %.2f, want 0 within %.2f", mean, 3.5/math.Sqrt(merges))
+	}
+}
