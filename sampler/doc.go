@@ -23,6 +23,17 @@
 //  7. While the error is above the wanted one, Run adds a run and merge.go joins
 //     them. The Outcome (outcome.go) is judged last.
 //
+// What is done with a finished Outcome:
+//
+//   - strands.go splits it into the threads of single live points, and
+//     bootstrap.go draws those anew for an error of its own.
+//   - modes.go finds the modes that parted and the evidence of each.
+//   - posterior.go has moments, quantiles and intervals with errors, reweight.go
+//     the same under another prior.
+//   - bridge.go and importance.go find the same evidence from a density fitted to
+//     the posterior (mixture.go), density_ratio.go the Savage-Dickey ratio of a
+//     nested pair.
+//
 // What no run can see: a mode that holds no live point when the ellipsoids
 // first part from it, is lost, and the insertion ranks do not tell. A mode needs
 // a share of several over LivePoints of the prior volume above the threshold at

@@ -30,7 +30,8 @@ func (p *Prepared) summarise(h *hypothesis, o *sampler.Outcome) (report.Hypothes
 		EffectiveSamples: report.Number(o.EffectiveSamples),
 		InsertionRankP:   report.Number(o.InsertionRankP),
 		Status:           o.Status.String(), Partial: o.Partial,
-		Verdict: o.Verdict, Warnings: o.Warnings,
+		BootstrapError: report.Number(math.Hypot(o.BootstrapError, h.allowed.error)),
+		Verdict:        o.Verdict, Warnings: o.Warnings,
 		MaxLogLikelihood: report.Number(largest),
 	}
 

@@ -70,11 +70,15 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 			w.Cautions = append(w.Cautions, fmt.Sprintf("interrupted before hypothesis %s had its first live points", h.Name))
 			continue
 		}
-		seconds := time.Since(began).Seconds()
 		var entry report.Hypothesis
 		var posterior report.Posterior
 		if err == nil {
 			entry, posterior, err = p.summarise(h, outcome)
+		}
+		if err == nil {
+			var warnings []string
+			entry.Routes, warnings, err = p.routes(ctx, h, outcome, o.Workers)
+			entry.Warnings = append(entry.Warnings, warnings...)
 		}
 		if err != nil {
 			failure = fmt.Errorf("hypothesis %s: %w", h.Name, err)
@@ -82,7 +86,7 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 			w.Cautions = append(w.Cautions, failure.Error())
 			break
 		}
-		entry.Seconds = report.Number(seconds)
+		entry.Seconds = report.Number(time.Since(began).Seconds())
 		w.Partial = w.Partial || outcome.Partial
 		w.Hypotheses = append(w.Hypotheses, entry)
 		posteriors = append(posteriors, posterior)

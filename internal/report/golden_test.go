@@ -37,7 +37,11 @@ func someWeighing() *Weighing {
 		Hypotheses: []Hypothesis{
 			{
 				Name: "horizon", Model: "ringdown", LogEvidence: 123556.0, LogEvidenceError: 0.104,
-				LogEvidenceOver: 99.21875, Calls: 1234567, Seconds: 31.25, Verdict: "sound",
+				LogEvidenceOver: 99.21875, Calls: 1234567, Seconds: 31.25, Routes: []Route{
+					{Name: "bridge", LogEvidenceOver: 99.2, Error: 0.004, EffectiveSamples: 1874, Calls: 2000},
+					{Name: "importance", LogEvidenceOver: 99.23, Error: 0.007, EffectiveSamples: 1671, Calls: 2000},
+				}, BootstrapError: 0.09,
+				Verdict:    "sound",
 				Dimensions: 4, LivePoints: 1000, Information: 11.5, EffectiveSamples: 4300,
 				InsertionRankP: 0.43, Status: "remaining evidence below the limit", MaxLogLikelihood: 112.5,
 				Summary: []ParameterSummary{

@@ -43,6 +43,24 @@ func writeEvidences(out io.Writer, w *Weighing) error {
 		})
 	}
 	fmt.Fprint(out, "\nEvidence (natural logarithms)\n")
+	if err := g.write(out); err != nil {
+		return err
+	}
+	return writeRoutes(out, w)
+}
+
+// writeRoutes shows the evidences over noise that were found another way.
+func writeRoutes(out io.Writer, w *Weighing) error {
+	g := grid{head: []string{"by another route", "ln evidence over noise", "effective samples", "calls"}, left: 1, pad: "  "}
+	for _, h := range w.Hypotheses {
+		for _, r := range h.Routes {
+			g.rows = append(g.rows, []string{h.Name + ", " + r.Name + " sampling", withError(r.LogEvidenceOver, r.Error), decimals(r.EffectiveSamples, 0), thousands(float64(r.Calls))})
+		}
+	}
+	if len(g.rows) == 0 {
+		return nil
+	}
+	fmt.Fprintln(out)
 	return g.write(out)
 }
 

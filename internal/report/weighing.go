@@ -53,6 +53,11 @@ type Hypothesis struct {
 	Partial          bool     `json:"partial"`
 	MaxLogLikelihood Number   `json:"max_log_likelihood_over_noise"`
 	Warnings         []string `json:"warnings"`
+	// Routes are further ways to the same evidence; none for a partial run.
+	Routes []Route `json:"routes"`
+	// BootstrapError is the error of the log-evidence found by drawing strands of
+	// the run anew, beside log_evidence_error, which simulates its shrinkages.
+	BootstrapError Number `json:"bootstrap_error"`
 	// StablePrior is the share of the prior that the switch "stable" left, 1
 	// without it; the evidence is that of the prior normalised over this share.
 	StablePrior Number `json:"stable_prior"`
@@ -60,6 +65,15 @@ type Hypothesis struct {
 	// grow.
 	UnstablePosterior Number             `json:"unstable_posterior"`
 	Summary           []ParameterSummary `json:"summary"`
+}
+
+// Route is the same evidence found another way from the finished run.
+type Route struct {
+	Name             string `json:"name"` // bridge or importance
+	LogEvidenceOver  Number `json:"log_evidence_over_noise"`
+	Error            Number `json:"error"`
+	EffectiveSamples Number `json:"effective_samples"`
+	Calls            int64  `json:"calls"`
 }
 
 // ParameterSummary is the median of one posterior column and the ends of its
@@ -121,6 +135,7 @@ func (w *Weighing) WriteJSON(out io.Writer) error {
 	document.Hypotheses = make([]Hypothesis, len(w.Hypotheses))
 	for i, h := range w.Hypotheses {
 		h.Warnings = notNil(h.Warnings)
+		h.Routes = notNil(h.Routes)
 		h.Summary = notNil(h.Summary)
 		document.Hypotheses[i] = h
 	}
