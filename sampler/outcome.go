@@ -104,7 +104,6 @@ type Outcome struct {
 	ranks     []float64
 
 	compared    bool    // RunsP was set
-	sticky      bool    // slices still remembered their start
 	rankMethods []uint8 // method that drew the point of each rank
 	periodic    []bool  // as in Settings
 }
@@ -129,9 +128,6 @@ func (o *Outcome) judge() {
 		o.Warnings = append(o.Warnings, fmt.Sprintf("errors of ln Z disagree: %.3g nat by simulated shrinkage, %.3g by resampled strands, %.1f standard errors apart",
 			o.LogEvidenceError, o.BootstrapError, math.Abs(t)))
 		doubts = append(doubts, fmt.Sprintf("the error may be %.3g nat: compare independent runs", max(o.LogEvidenceError, o.BootstrapError)))
-	}
-	if o.sticky {
-		doubts = append(doubts, "slices stay near their start: use more live points or slice steps and compare")
 	}
 	if what := o.disagreement(); what != "" {
 		doubts = append(doubts, what)
