@@ -80,14 +80,10 @@ func describeCavity(s Settings) ([]Parameter, error) {
 	if _, err := parseParity(s.Parity); err != nil {
 		return nil, err
 	}
-	if _, err := checkAngular(s.Angular); err != nil {
-		return nil, err
-	}
-	labels, err := parseModes(s.Modes)
+	list, err := describeRingdown(s)
 	if err != nil {
 		return nil, err
 	}
-	list := append(remnantParameters(s), modeParameters(labels)...)
 	list = append(list,
 		Parameter{Name: "offset", Note: "log10 of the surface's proper distance from the would-be horizon in Planck lengths", Low: -40, High: 34},
 		Parameter{Name: "echo_phase", Unit: "rad", Note: "phase of the surface's reflectivity", Low: 0, High: 2 * math.Pi, Periodic: true})

@@ -110,14 +110,10 @@ func describeComb(s Settings) ([]Parameter, error) {
 		}
 		return append([]Parameter{startParameter(s, "where the comb begins, after the event time")}, combParameters()...), nil
 	}
-	if _, err := checkAngular(s.Angular); err != nil {
-		return nil, err
-	}
-	labels, err := parseModes(s.Modes)
+	list, err := describeRingdown(s)
 	if err != nil {
 		return nil, err
 	}
-	list := append(remnantParameters(s), modeParameters(labels)...)
 	return append(list, combParameters()...), nil
 }
 

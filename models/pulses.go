@@ -39,14 +39,10 @@ var (
 )
 
 func describePulses(s Settings) ([]Parameter, error) {
-	if _, err := checkAngular(s.Angular); err != nil {
-		return nil, err
-	}
-	labels, err := parseModes(s.Modes)
+	list, err := describeRingdown(s)
 	if err != nil {
 		return nil, err
 	}
-	list := append(remnantParameters(s), modeParameters(labels)...)
 	return append(list,
 		Parameter{Name: "pulse_delay", Unit: "s", Note: "from the start of the ringdown to the first copy", Low: 1e-5, High: maxStart},
 		Parameter{Name: "spacing_ratio", Note: "time between later copies over that to the first", Low: 1e-3, High: 1e3, Default: 1, HasDefault: true},

@@ -15,6 +15,7 @@ type Ringdown struct {
 
 var _ Model = (*Ringdown)(nil)
 
+// describeRingdown lists the parameters that every model with modes begins with.
 func describeRingdown(s Settings) ([]Parameter, error) {
 	if _, err := checkAngular(s.Angular); err != nil {
 		return nil, err

@@ -55,20 +55,7 @@ func BenchmarkNewSpin8000(b *testing.B) {
 	for _, lm := range [][2]int{{2, 2}, {3, 1}, {4, 4}, {4, -4}} {
 		b.Run(fmt.Sprintf("l=%d,m=%d", lm[0], lm[1]), func(b *testing.B) {
 			barrier := newBarrier(b, lm[0], lm[1], Odd)
-			const n = 8000
-			re, im := make([]float64, n), make([]float64, n)
-			spin := 0.0
-			b.ReportAllocs()
-			for b.Loop() {
-				spin = nextSpin(spin)
-				if err := barrier.SetSpin(spin); err != nil {
-					b.Fatal(err)
-				}
-				if err := barrier.Reflection(0.001, 1.999/(n-1), re, im); err != nil {
-					b.Fatal(err)
-				}
-			}
-			b.ReportMetric(float64(b.Elapsed().Microseconds())/float64(b.N), "µs/spin")
+			newSpins(b, barrier, barrier.Reflection)
 		})
 	}
 }
@@ -76,6 +63,11 @@ func BenchmarkNewSpin8000(b *testing.B) {
 // BenchmarkTransmission is BenchmarkNewSpin8000 for T.
 func BenchmarkTransmission(b *testing.B) {
 	barrier := newBarrier(b, 2, 2, Odd)
+	newSpins(b, barrier, barrier.Transmission)
+}
+
+// newSpins asks a barrier's R or T at 8,000 frequencies of one spin after another.
+func newSpins(b *testing.B, barrier *Barrier, ask func(omega0, domega float64, re, im []float64) error) {
 	const n = 8000
 	re, im := make([]float64, n), make([]float64, n)
 	spin := 0.0
@@ -85,7 +77,7 @@ func BenchmarkTransmission(b *testing.B) {
 		if err := barrier.SetSpin(spin); err != nil {
 			b.Fatal(err)
 		}
-		if err := barrier.Transmission(0.001, 1.999/(n-1), re, im); err != nil {
+		if err := ask(0.001, 1.999/(n-1), re, im); err != nil {
 			b.Fatal(err)
 		}
 	}
