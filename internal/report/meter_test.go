@@ -18,7 +18,7 @@ func newTestMeter(terminal bool) (*Meter, *bytes.Buffer, *fakeClock) {
 	var out bytes.Buffer
 	clock := &fakeClock{time.Date(2026, 1, 1, 0, 0, 0, 0, time.UTC)}
 	m := NewMeter(&out)
-	m.now, m.terminal, m.width = clock.now, terminal, func() int { return 80 }
+	m.now, m.status.terminal, m.status.width = clock.now, terminal, func() int { return 80 }
 	return m, &out, clock
 }
 
@@ -52,7 +52,7 @@ func TestMeterNewLabelShowsAtOnce(t *testing.T) {
 
 func TestMeterTerminal(t *testing.T) {
 	m, out, clock := newTestMeter(true)
-	m.width = func() int { return 60 }
+	m.status.width = func() int { return 60 }
 	m.Update(Progress{"a long name", 123456.5, 0.25, 123456789, 0.5})
 	m.Update(Progress{"a long name", 1, 0.25, 1, 0.5}) // too soon
 	clock.at = clock.at.Add(time.Second)
@@ -97,8 +97,8 @@ func TestClock(t *testing.T) {
 		0: "0 s", 59400 * time.Millisecond: "59 s", 59600 * time.Millisecond: "1:00",
 		125 * time.Second: "2:05", 3*time.Hour + 2*time.Minute + 5*time.Second: "3:02:05",
 	} {
-		if got := clock(d); got != want {
-			t.Errorf("clock(%v) = %q, want %q", d, got, want)
+		if got := Clock(d); got != want {
+			t.Errorf("Clock(%v) = %q, want %q", d, got, want)
 		}
 	}
 }

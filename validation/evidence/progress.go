@@ -3,36 +3,24 @@ package main
 import (
 	"fmt"
 	"io"
-	"os"
-	"strings"
 	"sync"
 	"time"
-	"unicode/utf8"
 
-	"golang.org/x/term"
-)
-
-// A terminal's line is rewritten, another output gets a line now and then.
-const (
-	terminalEvery = 200 * time.Millisecond
-	plainEvery    = 10 * time.Second
+	"knell/internal/report"
 )
 
 // meter tells how far the runs are. Safe for concurrent use.
 type meter struct {
-	out      io.Writer
-	terminal bool
-	now      func() time.Time
+	now func() time.Time
 
 	mu     sync.Mutex
+	status report.StatusLine
 	cases  []problemCase
 	seeds  int
 	ended  []int     // runs per case
 	spent  []float64 // seconds of those
 	active []activity
 	began  time.Time
-	last   time.Time
-	shown  int // characters on the terminal's line
 }
 
 // activity is what a worker does.
@@ -45,11 +33,8 @@ type activity struct {
 
 func newMeter(out io.Writer, cases []problemCase, o options) *meter {
 	m := &meter{
-		out: out, now: time.Now, cases: cases, seeds: o.seeds,
+		status: report.NewStatusLine(out), now: time.Now, cases: cases, seeds: o.seeds,
 		ended: make([]int, len(cases)), spent: make([]float64, len(cases)), active: make([]activity, o.workers),
-	}
-	if f, ok := out.(*os.File); ok && term.IsTerminal(int(f.Fd())) && os.Getenv("TERM") != "dumb" {
-		m.terminal = true
 	}
 	m.began = m.now()
 	return m
@@ -87,31 +72,15 @@ func (m *meter) end(worker int, r oneRun) {
 func (m *meter) done() {
 	m.mu.Lock()
 	defer m.mu.Unlock()
-	if m.terminal && m.shown > 0 {
-		fmt.Fprint(m.out, "\r"+strings.Repeat(" ", m.shown)+"\r")
-		m.shown = 0
-	}
+	m.status.Clear()
 }
 
 // show prints the state of a case if the last line is old enough, or at once.
 func (m *meter) show(of int, once bool) {
 	now := m.now()
-	every := plainEvery
-	if m.terminal {
-		every = terminalEvery
+	if once || m.status.Due(now) {
+		m.status.Show(now, m.line(of, now))
 	}
-	if !once && !m.last.IsZero() && now.Sub(m.last) < every {
-		return
-	}
-	m.last = now
-	line := m.line(of, now)
-	if !m.terminal {
-		fmt.Fprintln(m.out, line)
-		return
-	}
-	n := utf8.RuneCountInString(line)
-	fmt.Fprint(m.out, "\r"+line+strings.Repeat(" ", max(0, m.shown-n)))
-	m.shown = n
 }
 
 // line says how far case number at is, and the whole.
@@ -122,9 +91,9 @@ func (m *meter) line(at int, now time.Time) string {
 	}
 	c := m.cases[at]
 	text := fmt.Sprintf("%s/%d: %d of %d runs; in all %d of %d, %s gone", c.name, c.dim, m.ended[at], m.seeds,
-		total, m.seeds*len(m.cases), clock(now.Sub(m.began)))
+		total, m.seeds*len(m.cases), report.Clock(now.Sub(m.began)))
 	if left, ok := m.left(now); ok {
-		text += ", about " + clock(left) + " left"
+		text += ", about " + report.Clock(left) + " left"
 	}
 	return text
 }
@@ -166,16 +135,4 @@ func (m *meter) left(now time.Time) (time.Duration, bool) {
 		left += each[i] * max(0, float64(m.seeds-m.ended[i])-gone[i])
 	}
 	return time.Duration(left / float64(len(m.active)) * float64(time.Second)), true
-}
-
-// clock shows a duration to the second as 9 s, 2:05 or 3:02:05.
-func clock(d time.Duration) string {
-	s := int64(d.Round(time.Second) / time.Second)
-	switch {
-	case s < 60:
-		return fmt.Sprintf("%d s", s)
-	case s < 3600:
-		return fmt.Sprintf("%d:%02d", s/60, s%60)
-	}
-	return fmt.Sprintf("%d:%02d:%02d", s/3600, s/60%60, s%60)
 }

@@ -5,6 +5,8 @@ import (
 	"strings"
 	"testing"
 	"time"
+
+	"knell/internal/report"
 )
 
 func TestMeterEstimatesTimeLeft(t *testing.T) {
@@ -59,7 +61,7 @@ func TestMeterIsQuietBetweenLines(t *testing.T) {
 
 func TestClock(t *testing.T) {
 	for d, want := range map[time.Duration]string{9 * time.Second: "9 s", 125 * time.Second: "2:05", 10925 * time.Second: "3:02:05"} {
-		if got := clock(d); got != want {
+		if got := report.Clock(d); got != want {
 			t.Errorf("clock(%v) = %q, want %q", d, got, want)
 		}
 	}
