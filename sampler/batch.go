@@ -11,8 +11,10 @@ import (
 )
 
 const (
-	// batchShare: a batch removes this share of the live points at once. Twice
-	// as many leave workers idle half as often, and thresholds staler.
+	// A batch removes LivePoints/BatchShare live points at once, and up to
+	// InFlight batches of replacements are drawn at the same time.
+	BatchShare, InFlight = 32, 4
+
 	batchShare = 16
 
 	// rebuildStep is the compression, in nats, after which the ellipsoids are

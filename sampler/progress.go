@@ -22,7 +22,7 @@ func (r *runner) report(m method, efficiency float64) {
 	} else if r.set.EvidenceError > 0 {
 		// One run of this information will be one of so many.
 		runs := max(1, math.Ceil(variance/(r.set.EvidenceError*r.set.EvidenceError)))
-		fraction /= min(runs, float64(r.set.MaxRuns))
+		fraction /= min(runs, float64(r.set.MaxGrowth))
 	}
 	r.prior.fraction = max(r.prior.fraction, fraction)
 	r.set.Progress(Progress{

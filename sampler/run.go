@@ -75,13 +75,13 @@ func Run(ctx context.Context, newTarget func() (Target, error), s Settings) (*Ou
 		if err != nil || result.LogEvidenceError <= s.EvidenceError {
 			return result, err
 		}
-		if len(parts) == s.MaxRuns {
+		if len(parts) == s.MaxGrowth {
 			result.note("%d runs reached an error of %.3g nat, %.3g wanted: use more live points", len(parts), result.LogEvidenceError, s.EvidenceError)
 			result.judge()
 			return result, nil
 		}
 		ratio := result.LogEvidenceError / s.EvidenceError
-		prior.wanted = int(math.Ceil(min(float64(s.MaxRuns), cautious*float64(len(parts))*ratio*ratio)))
+		prior.wanted = int(math.Ceil(min(float64(s.MaxGrowth), cautious*float64(len(parts))*ratio*ratio)))
 		prior.wanted = max(prior.wanted, len(parts)+1)
 		prior.logZ, prior.variance = result.LogEvidence, result.LogEvidenceError*result.LogEvidenceError
 		prior.known = len(parts)

@@ -157,7 +157,7 @@ func TestEvidenceErrorIsReached(t *testing.T) {
 	if z := (o.LogEvidence - p.want) / o.LogEvidenceError; math.Abs(z) > 4 {
 		t.Errorf("z = %g", z)
 	}
-	s.Progress, s.MaxRuns = nil, 2
+	s.Progress, s.MaxGrowth = nil, 2
 	o, err = Run(context.Background(), p.target, s)
 	if err != nil {
 		t.Fatal(err)

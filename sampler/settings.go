@@ -4,13 +4,15 @@ import (
 	"fmt"
 	"math"
 	"runtime"
+	"time"
 )
 
 // Defaults of Settings.
 const (
 	DefaultLivePoints = 1000
 	DefaultRemaining  = 0.001 // nat
-	DefaultMaxRuns    = 100
+	DefaultMaxGrowth  = 100   // times LivePoints
+	DefaultKeepEvery  = 10 * time.Second
 )
 
 // minLivePoints is the least live number; below it neither the shrinkage
@@ -26,13 +28,17 @@ type Settings struct {
 	// at least 4 (dimension + 1).
 	LivePoints int
 
-	// EvidenceError is the largest standard error of the log-evidence to stop
-	// at, in nats. Further independent runs are added and merged until the
-	// simulated error is below it. 0, the default, means one run.
-	EvidenceError float64
+	// EvidenceError is the largest standard error of the log-evidence, and
+	// PosteriorSamples the least effective number of posterior samples
+	// (Outcome.EffectiveSamples), to stop at. When the run of LivePoints is over,
+	// further strands are added to it over those ranges of the likelihood where
+	// they help most, until both hold. 0, the default, asks for nothing.
+	EvidenceError    float64 // nats
+	PosteriorSamples float64
 
-	// MaxRuns bounds the number of runs EvidenceError may ask for, default 100.
-	MaxRuns int
+	// MaxGrowth bounds the live number that EvidenceError and PosteriorSamples
+	// may ask for, in units of LivePoints, default 100.
+	MaxGrowth int
 
 	// Remaining ends a run once ln(1 + Z'/Z) is below it, where Z' is the prior
 	// volume left times the mean likelihood of the live points. In nats,
@@ -62,6 +68,18 @@ type Settings struct {
 	// Progress, if not nil, is called between batches from the goroutine that
 	// called Run.
 	Progress func(Progress)
+
+	// Keeper, if not nil, keeps the state of the run, so that an equal Run goes on
+	// from there after its process has ended for whatever reason, to the same
+	// bits. It is given the state at most every KeepEvery (default 10 s), less
+	// often where that would take more than a hundredth of the time, and at the
+	// end or on cancellation.
+	Keeper    Keeper
+	KeepEvery time.Duration
+
+	// Problem says what the likelihood is, in any words. A state that was kept of
+	// another problem or other settings is refused with a *ResumeError.
+	Problem string
 
 	// force fixes the way of drawing, for tests of one way alone.
 	force method
@@ -93,11 +111,20 @@ func (s Settings) resolve(dim int) (Settings, error) {
 	if !(s.EvidenceError >= 0) || math.IsInf(s.EvidenceError, 0) {
 		return s, bad("EvidenceError", s.EvidenceError, "a finite number of nats, 0 (one run) or more")
 	}
-	if s.MaxRuns == 0 {
-		s.MaxRuns = DefaultMaxRuns
+	if !(s.PosteriorSamples >= 0) || math.IsInf(s.PosteriorSamples, 0) {
+		return s, bad("PosteriorSamples", s.PosteriorSamples, "a finite effective number of samples, 0 (any) or more")
 	}
-	if s.MaxRuns < 1 {
-		return s, bad("MaxRuns", s.MaxRuns, fmt.Sprintf("0 (for %d) or at least 1", DefaultMaxRuns))
+	if s.MaxGrowth == 0 {
+		s.MaxGrowth = DefaultMaxGrowth
+	}
+	if s.MaxGrowth < 1 {
+		return s, bad("MaxGrowth", s.MaxGrowth, fmt.Sprintf("0 (for %d) or at least 1", DefaultMaxGrowth))
+	}
+	if s.KeepEvery == 0 {
+		s.KeepEvery = DefaultKeepEvery
+	}
+	if s.KeepEvery < 0 {
+		return s, bad("KeepEvery", s.KeepEvery, fmt.Sprintf("0 (for %v) or more", DefaultKeepEvery))
 	}
 	if s.Remaining == 0 {
 		s.Remaining = DefaultRemaining

@@ -17,7 +17,7 @@ func TestBadSettingsAreNamed(t *testing.T) {
 		{"EvidenceError", Settings{EvidenceError: -0.1}},
 		{"EvidenceError", Settings{EvidenceError: math.NaN()}},
 		{"EvidenceError", Settings{EvidenceError: math.Inf(1)}},
-		{"MaxRuns", Settings{MaxRuns: -1}},
+		{"MaxGrowth", Settings{MaxGrowth: -1}},
 		{"Remaining", Settings{Remaining: -1}},
 		{"Remaining", Settings{Remaining: math.NaN()}},
 		{"Remaining", Settings{Remaining: 2}},
