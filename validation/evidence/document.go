@@ -7,14 +7,16 @@ import (
 
 // document is what --json prints. A number that is not known is null.
 type document struct {
-	Seed        uint64 `json:"seed"`
-	LivePoints  int    `json:"live_points"`
-	Interrupted bool   `json:"interrupted"`
-	Problems    []row  `json:"problems"`
+	Seed       uint64 `json:"seed"`
+	LivePoints int    `json:"live_points"`
+	// Grow is the share of a plain run's error that the runs were to reach.
+	Grow        float64 `json:"grow,omitempty"`
+	Interrupted bool    `json:"interrupted"`
+	Problems    []row   `json:"problems"`
 }
 
 func writeDocument(out io.Writer, o options, rows []row, interrupted bool) error {
 	e := json.NewEncoder(out)
 	e.SetIndent("", "  ")
-	return e.Encode(document{o.seed, o.live, interrupted, rows})
+	return e.Encode(document{o.seed, o.live, o.grow, interrupted, rows})
 }

@@ -14,6 +14,8 @@ import (
 	"strings"
 	"testing"
 	"time"
+
+	"knell/validation/trials"
 )
 
 // asCommand makes the test binary the command itself.
@@ -44,12 +46,13 @@ func TestWrongTruthFails(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	cases, err := o.cases(context.Background())
+	cases, err := trials.All(context.Background(), o.chosen)
 	if err != nil {
 		t.Fatal(err)
 	}
-	cases[0].truth += 0.4
-	rows := measure(context.Background(), cases, o, newMeter(io.Discard, cases, o))
+	cases[0].Truth += 0.4
+	var rows []row
+	measure(context.Background(), cases, o, trials.NewMeter(io.Discard, cases, o.seeds, o.workers), func(r row) { rows = append(rows, r) })
 	if rows[0].Passed || !strings.Contains(rows[0].Faults[0], "mean z") {
 		t.Errorf("passed %t, faults %q; want mean z", rows[0].Passed, rows[0].Faults)
 	}
@@ -166,5 +169,35 @@ func TestSignalEndsCleanly(t *testing.T) {
 		if !strings.Contains(out.String(), s) {
 			t.Errorf("stdout has no %q:\n%s", s, out.String())
 		}
+	}
+}
+
+// A row is there as soon as its runs are: what it says can end the rest.
+func TestRowsPrintAsTheyComplete(t *testing.T) {
+	ctx, cancel := context.WithCancel(context.Background())
+	defer cancel()
+	out := &cancelling{text: "gaussian    2     4   -1.3863", cancel: cancel}
+	status := run(ctx, strings.Fields("--problems gaussian --dims 2,16 --seeds 4 --live 100 --workers 2"), out, io.Discard)
+	if status != interrupted || !strings.Contains(out.seen.String(), "INTERRUPTED") {
+		t.Errorf("status %d, want %d: the row of 2 dimensions came after the runs in 16\n%s", status, interrupted, out.seen.String())
+	}
+}
+
+// Grown runs reach the share of a plain run's error, for more calls.
+func TestGrownRuns(t *testing.T) {
+	var docs [2]document
+	for i, grow := range []string{"1", "0.6"} {
+		var out bytes.Buffer
+		run(context.Background(), strings.Fields("--problems gaussian --dims 2 --seeds 4 --live 100 --json --grow "+grow), &out, io.Discard)
+		if err := json.Unmarshal(out.Bytes(), &docs[i]); err != nil {
+			t.Fatal(err)
+		}
+	}
+	full, part := docs[0].Problems[0], docs[1].Problems[0]
+	if math.Abs(part.Wanted/full.Wanted-0.6) > 1e-12 || docs[1].Grow != 0.6 {
+		t.Errorf("wanted errors %g and %g, want the second 0.6 times the first", full.Wanted, part.Wanted)
+	}
+	if float64(part.Error) > part.Wanted || part.Calls < 1.5*full.Calls {
+		t.Errorf("error %g for %g calls, want %g at most, for more than the %g calls of a larger error", part.Error, part.Calls, part.Wanted, full.Calls)
 	}
 }

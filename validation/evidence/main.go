@@ -2,12 +2,15 @@
 // is known, each over many seeds:
 //
 //	go run ./validation/evidence [--problems gaussian,shells] [--dims 5,8]
-//	    [--seeds 30] [--seed 1] [--live 500] [--workers N] [--json]
+//	    [--seeds 30] [--seed 1] [--live 500] [--grow X] [--workers N] [--json]
 //
-// The road: options.go reads the command line, cases.go makes the problems,
-// runner.go runs the sampler for every problem and seed, row.go turns the runs of
-// a problem into its row and judges it, table.go and document.go print. progress.go
-// tells on stderr how far it is.
+// With --grow the runs go on until their error is X times that of a plain run with
+// as many live points, which a run before them finds out.
+//
+// The road: options.go reads the command line, package trials makes the problems and
+// hands out the runs, runner.go makes one, row.go turns the runs of a problem into its
+// row and judges it, table.go prints each row as soon as it is complete, document.go
+// all of them at the end.
 //
 // The exit status is 0 if every problem passed, 1 if one failed or the runs could
 // not be made, 2 for options that cannot be used and 130 after an interrupt,
@@ -26,6 +29,8 @@ import (
 	"os"
 	"os/signal"
 	"syscall"
+
+	"knell/validation/trials"
 )
 
 // Exit statuses.
@@ -53,7 +58,7 @@ func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 		fmt.Fprintf(stderr, "evidence: %v\n", err)
 		return badUsage
 	}
-	cases, err := o.cases(ctx)
+	cases, err := trials.All(ctx, o.chosen)
 	if err != nil {
 		if ctx.Err() != nil {
 			return interrupted
@@ -61,14 +66,27 @@ func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 		fmt.Fprintf(stderr, "evidence: %v\n", err)
 		return failed
 	}
-	m := newMeter(stderr, cases, o)
-	rows := measure(ctx, cases, o, m)
-	m.done()
-	write := writeTable
-	if o.json {
-		write = writeDocument
+	var (
+		rows []row
+		t    *table
+		m    = trials.NewMeter(stderr, cases, o.seeds, o.workers)
+	)
+	if !o.json {
+		t = newTable(stdout, o, cases)
 	}
-	if err := write(stdout, o, rows, ctx.Err() != nil); err != nil {
+	measure(ctx, cases, o, m, func(r row) {
+		rows = append(rows, r)
+		if t != nil {
+			m.Above(func() { t.add(r) })
+		}
+	})
+	m.Done()
+	if o.json {
+		err = writeDocument(stdout, o, rows, ctx.Err() != nil)
+	} else {
+		err = t.end(ctx.Err() != nil)
+	}
+	if err != nil {
 		fmt.Fprintf(stderr, "evidence: %v\n", err)
 		return failed
 	}

@@ -3,10 +3,10 @@ package main
 import (
 	"bytes"
 	"context"
-	"io"
-	"slices"
 	"strings"
 	"testing"
+
+	"knell/validation/trials"
 )
 
 // Every option that cannot be used ends with status 2 and a message that says the
@@ -28,6 +28,8 @@ func TestBadOptions(t *testing.T) {
 		{"--seed -1", []string{"--seed", `"-1"`, "from 0"}},
 		{"--live 31", []string{"--live", `"31"`, "32 to"}},
 		{"--problems gaussian --dims 8 --live 32", []string{"--live", "32", "at least 36", "8 dimensions"}},
+		{"--grow 2", []string{"--grow", `"2"`, "0.05 to 1"}},
+		{"--grow NaN", []string{"--grow", `"NaN"`, "0.05 to 1"}},
 		{"--workers 0", []string{"--workers", `"0"`, "1 to"}},
 		{"--json=perhaps", []string{"json", "perhaps"}},
 		{"--fast", []string{"-fast", "--problems", "--json"}},
@@ -55,44 +57,18 @@ func TestHelp(t *testing.T) {
 	if status := run(context.Background(), []string{"--help"}, &out, &errs); status != passed {
 		t.Errorf("status %d, want %d", status, passed)
 	}
-	for _, f := range families() {
+	for _, f := range trials.Families() {
 		if !strings.Contains(errs.String(), "  "+f.Name+" ") {
 			t.Errorf("the help does not name %s", f.Name)
 		}
 	}
 }
 
-func TestChosenProblems(t *testing.T) {
-	for _, tc := range []struct {
-		args string
-		want []choice
-	}{
-		{"--problems shells,gaussian --dims 5,8", []choice{{"gaussian", 5}, {"gaussian", 8}, {"shells", 5}, {"shells", 8}}},
-		{"--problems eggbox,rosenbrock --dims 2,6", []choice{{"eggbox", 2}, {"rosenbrock", 2}, {"rosenbrock", 6}}},
-		{"--problems gaussian", []choice{{"gaussian", 2}, {"gaussian", 8}, {"gaussian", 16}, {"gaussian", 32}}},
-		{"--problems cavity", []choice{{"cavity", 4}}},
-	} {
-		o, err := parse(strings.Fields(tc.args), io.Discard)
-		if err != nil || !slices.Equal(o.chosen, tc.want) {
-			t.Errorf("%s: %v, %v; want %v", tc.args, o.chosen, err, tc.want)
-		}
-	}
-	// Without names, problems that do not take a dimension are left out.
-	o, err := parse([]string{"--dims", "64"}, io.Discard)
-	if err != nil || len(o.chosen) == 0 || slices.Contains(o.chosen, choice{cavityName, 64}) || !slices.Contains(o.chosen, choice{"gaussian", 64}) {
-		t.Errorf("--dims 64: %v, %v", o.chosen, err)
-	}
-	all, err := parse(nil, io.Discard)
-	if err != nil || len(all.chosen) < 20 || all.seeds != 100 {
-		t.Errorf("no options: %d problems of %d seeds, %v; want 20 or more of 100", len(all.chosen), all.seeds, err)
-	}
-}
-
 func TestAims(t *testing.T) {
 	for _, tc := range []struct {
-		c    choice
+		c    trials.Choice
 		want float64
-	}{{choice{"gaussian", 6}, 3}, {choice{"gaussian", 16}, 20}, {choice{"gaussian", 32}, 120}, {choice{"gaussian", 33}, 0}, {choice{cavityName, 4}, 3}, {choice{"shells", 2}, 0}} {
+	}{{trials.Choice{Name: "gaussian", Dim: 6}, 3}, {trials.Choice{Name: "gaussian", Dim: 16}, 20}, {trials.Choice{Name: "gaussian", Dim: 32}, 120}, {trials.Choice{Name: "gaussian", Dim: 33}, 0}, {trials.Choice{Name: trials.Cavity, Dim: 4}, 3}, {trials.Choice{Name: "shells", Dim: 2}, 0}} {
 		if got := aim(tc.c); got != tc.want {
 			t.Errorf("aim for %v = %g, want %g", tc.c, got, tc.want)
 		}

@@ -9,6 +9,7 @@ import (
 	"knell/internal/report"
 	"knell/sampler"
 	"knell/validation"
+	"knell/validation/trials"
 )
 
 const (
@@ -41,6 +42,7 @@ type row struct {
 	StdZHigh   report.Number `json:"std_z_high"`
 	Difference report.Number `json:"mean_difference"` // ln Z - truth
 	Error      report.Number `json:"mean_error"`      // as quoted
+	Wanted     float64       `json:"wanted_error,omitempty"`
 
 	Calls      report.Number `json:"calls"` // per run
 	IdealRatio report.Number `json:"ideal_ratio"`
@@ -69,10 +71,10 @@ type drawing struct {
 }
 
 // newRow turns the finished runs of a case into its row and judges it.
-func newRow(c problemCase, o options, runs []oneRun) row {
+func newRow(c trials.Case, o options, runs []oneRun) row {
 	nan := report.Number(math.NaN())
 	r := row{
-		Name: c.name, Dim: c.dim, Truth: report.Number(c.truth), Source: c.source, Remaining: c.remaining, Aim: c.most,
+		Name: c.Name, Dim: c.Dim, Truth: report.Number(c.Truth), Source: c.Source, Remaining: c.Remaining, Aim: aim(c.Choice),
 		MeanZ: nan, MeanZError: nan, MeanZLimit: nan, StdZ: nan, StdZError: nan, StdZLow: nan, StdZHigh: nan,
 		Difference: nan, Error: nan, Calls: nan, IdealRatio: nan, RankP: nan,
 		Shrinkage: nan, ShrinkageError: nan, ShrinkageP: nan, Seconds: nan,
@@ -100,8 +102,12 @@ func newRow(c problemCase, o options, runs []oneRun) row {
 		if !q.sound {
 			r.Doubtful++
 		}
+		r.Wanted = q.wanted
+		if q.wanted > 0 && q.logZError > q.wanted {
+			r.Faults = append(r.Faults, fmt.Sprintf("run %d ended at an error of %.3g, %.3g wanted", i, q.logZError, q.wanted))
+		}
 		pulls = append(pulls, validation.Pull{
-			LogEvidence: q.logZ, Error: q.logZError, Z: (q.logZ - c.truth) / q.logZError, Calls: q.calls,
+			LogEvidence: q.logZ, Error: q.logZError, Z: (q.logZ - c.Truth) / q.logZError, Calls: q.calls,
 		})
 		rankP = append(rankP, q.rankP)
 		shrinks = append(shrinks, q.shrinkages...)
@@ -109,7 +115,7 @@ func newRow(c problemCase, o options, runs []oneRun) row {
 		points += float64(q.points)
 		seconds += q.seconds
 		errs += q.logZError
-		differs += q.logZ - c.truth
+		differs += q.logZ - c.Truth
 		r.add(q.phases)
 	}
 	if open > 0 {

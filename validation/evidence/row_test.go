@@ -8,6 +8,7 @@ import (
 
 	"knell/internal/random"
 	"knell/sampler"
+	"knell/validation/trials"
 )
 
 // madeRuns are runs of truth 5 and error 0.2 whose z is shift + wide times a unit
@@ -32,7 +33,7 @@ func madeRuns(n int, shift, wide, power, stretch float64) []oneRun {
 }
 
 func TestRowIsJudged(t *testing.T) {
-	c := problemCase{choice: choice{"made", 3}, truth: 5, source: "made up"}
+	c := trials.Case{Choice: trials.Choice{Name: "made", Dim: 3}, Truth: 5, Source: "made up"}
 	for _, tc := range []struct {
 		why   string
 		runs  []oneRun
@@ -63,7 +64,7 @@ func TestRowCountsWork(t *testing.T) {
 	runs[4].converged = false
 	runs[5].err = errors.New("no likelihood")
 	runs[6].sound = false
-	r := newRow(problemCase{choice: choice{"made", 3}, truth: 5}, options{}, runs)
+	r := newRow(trials.Case{Choice: trials.Choice{Name: "made", Dim: 3}, Truth: 5}, options{}, runs)
 	if r.Seeds != 19 || r.Doubtful != 1 || len(r.Faults) != 2 {
 		t.Errorf("%d seeds, %d doubtful, faults %q; want 19, 1 and two", r.Seeds, r.Doubtful, r.Faults)
 	}

@@ -3,34 +3,48 @@ package main
 import (
 	"fmt"
 	"io"
-	"math"
 	"strings"
-	"unicode/utf8"
 
-	"knell/internal/report"
+	"knell/validation/trials"
 )
 
-// writeTable prints the rows for a reader, with a few words on what they hold.
-func writeTable(out io.Writer, o options, rows []row, interrupted bool) error {
-	var b strings.Builder
-	fmt.Fprintf(&b, "evidence against truth: %d runs per problem, %d live points, seed %d\n", o.seeds, o.live, o.seed)
+// table prints rows for a reader, each as it comes, with a few words on what they
+// hold.
+type table struct{ *trials.Table }
+
+func newTable(out io.Writer, o options, cases []trials.Case) *table {
+	head := fmt.Sprintf("evidence against truth: %d runs per problem, %d live points, seed %d\n", o.seeds, o.live, o.seed)
+	if o.grow > 0 {
+		head = fmt.Sprintf("evidence against truth: %d runs per problem, %d live points, grown to %g times their error, seed %d\n", o.seeds, o.live, o.grow, o.seed)
+	}
+	_, err := io.WriteString(out, head)
+	t := trials.NewTable(out, []trials.Column{
+		{Head: "problem", Width: trials.NameWidth(cases), Left: true}, {Head: "dim"}, {Head: "runs"}, {Head: "truth", Width: 8},
+		{Head: "mean z", Width: 12}, {Head: "sd of z", Width: 11}, {Head: "error", Width: 5},
+		{Head: "calls", Width: 8}, {Head: "per point", Width: 11}, {Head: "rank p", Width: 6},
+		{Head: "shrinkage", Width: 15}, {Head: "p", Width: 5}, {Head: "s/run", Width: 5},
+		{Head: "drawn by (points, calls each)", Width: 53, Left: true}, {Head: "verdict", Left: true},
+	})
+	if err != nil {
+		t.Fail(err)
+	}
+	return &table{t}
+}
+
+func (t *table) add(r row) {
+	t.Line(r.Name, fmt.Sprint(r.Dim), fmt.Sprint(r.Seeds), trials.Fixed(r.Truth, 4),
+		trials.PlusMinus(r.MeanZ, r.MeanZError, "%+.2f ± %.2f"), trials.PlusMinus(r.StdZ, r.StdZError, "%.2f ± %.2f"),
+		trials.Fixed(r.Error, 3), trials.Fixed(r.Calls, 0), perPoint(r), trials.Fixed(r.RankP, 3),
+		trials.PlusMinus(r.Shrinkage, r.ShrinkageError, "%.4f ± %.4f"), trials.Fixed(r.ShrinkageP, 3),
+		trials.Fixed(r.Seconds, 2), drawn(r), verdict(r))
+}
+
+// end prints the words and returns the first error of the output.
+func (t *table) end(interrupted bool) error {
 	if interrupted {
-		fmt.Fprintln(&b, "INTERRUPTED: only the finished runs are counted")
+		t.Text("INTERRUPTED: only the finished runs are counted\n")
 	}
-	lines := [][]string{{
-		"problem", "dim", "runs", "truth", "mean z", "sd of z", "error", "calls", "per point", "rank p", "shrinkage", "p", "s/run", "drawn by (points, calls each)", "verdict",
-	}}
-	for _, r := range rows {
-		lines = append(lines, []string{
-			r.Name, fmt.Sprint(r.Dim), fmt.Sprint(r.Seeds), number(r.Truth, 4),
-			plusMinus(r.MeanZ, r.MeanZError, "%+.2f ± %.2f"), plusMinus(r.StdZ, r.StdZError, "%.2f ± %.2f"),
-			number(r.Error, 3), number(r.Calls, 0), perPoint(r), number(r.RankP, 3),
-			plusMinus(r.Shrinkage, r.ShrinkageError, "%.4f ± %.4f"), number(r.ShrinkageP, 3),
-			number(r.Seconds, 2), drawn(r), verdict(r),
-		})
-	}
-	columns(&b, lines, map[int]bool{0: true, 13: true, 14: true})
-	fmt.Fprint(&b, `
+	t.Text(`
 z         (ln Z - truth) / quoted error; its mean must be within 3/√runs of 0, its deviation in
           0.85 to 1.15, wider by the sampling error for fewer than 100 runs
 per point likelihood calls over the points of a run, dead and live; an ideal sampler has 1
@@ -38,57 +52,13 @@ rank p    uniformity of the runs' insertion-rank p-values, at least 0.001
 shrinkage where volumes are known: mean of n ln(V before / V), 1 for fair draws, and the p-value
           of its distribution, at least 0.001
 `)
-	_, err := io.WriteString(out, b.String())
-	return err
-}
-
-// columns aligns the lines, the columns of left to the left and the others to
-// the right.
-func columns(b *strings.Builder, lines [][]string, left map[int]bool) {
-	width := make([]int, len(lines[0]))
-	for _, l := range lines {
-		for i, cell := range l {
-			width[i] = max(width[i], utf8.RuneCountInString(cell))
-		}
-	}
-	for _, l := range lines {
-		text := ""
-		for i, cell := range l {
-			space := strings.Repeat(" ", width[i]-utf8.RuneCountInString(cell))
-			if left[i] {
-				text += cell + space + "  "
-			} else {
-				text += space + cell + "  "
-			}
-		}
-		b.WriteString(strings.TrimRight(text, " ") + "\n")
-	}
-}
-
-func known(x report.Number) bool { return !math.IsNaN(float64(x)) }
-
-func number(x report.Number, places int) string {
-	if !known(x) {
-		return "-"
-	}
-	text := fmt.Sprintf("%.*f", places, float64(x))
-	if strings.Trim(text, "-0.") == "" { // no "-0.0000"
-		text = strings.TrimPrefix(text, "-")
-	}
-	return text
-}
-
-func plusMinus(x, e report.Number, format string) string {
-	if !known(x) {
-		return "-"
-	}
-	return fmt.Sprintf(format, float64(x), float64(e))
+	return t.Err()
 }
 
 // perPoint is the ratio to the ideal, with the aim where there is one.
 func perPoint(r row) string {
-	if r.Aim == 0 || !known(r.IdealRatio) {
-		return number(r.IdealRatio, 1)
+	if r.Aim == 0 || !trials.Known(r.IdealRatio) {
+		return trials.Fixed(r.IdealRatio, 1)
 	}
 	return fmt.Sprintf("%.1f of %g", float64(r.IdealRatio), r.Aim)
 }

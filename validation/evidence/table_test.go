@@ -5,19 +5,23 @@ import (
 	"strings"
 	"testing"
 
-	"knell/internal/report"
+	"knell/validation/trials"
 )
 
 func TestTableSaysWhatFailed(t *testing.T) {
-	c := problemCase{choice: choice{cavityName, 4}, truth: 5, most: 3}
+	c := trials.Case{Choice: trials.Choice{Name: trials.Cavity, Dim: 4}, Truth: 5}
 	runs := madeRuns(20, 2, 1, 1, 1)
 	for i := range runs {
 		runs[i].sound = i > 2
 		runs[i].shrinkages = nil
 	}
-	rows := []row{newRow(c, options{}, runs), newRow(problemCase{choice: choice{"other", 12}}, options{}, nil)}
+	rows := []row{newRow(c, options{}, runs), newRow(trials.Case{Choice: trials.Choice{Name: "other", Dim: 12}}, options{}, nil)}
 	var out bytes.Buffer
-	if err := writeTable(&out, options{seeds: 20, live: 100, seed: 4}, rows, true); err != nil {
+	table := newTable(&out, options{seeds: 20, live: 100, seed: 4}, []trials.Case{c})
+	for _, r := range rows {
+		table.add(r)
+	}
+	if err := table.end(true); err != nil {
 		t.Fatal(err)
 	}
 	for _, s := range []string{
@@ -33,14 +37,6 @@ func TestTableSaysWhatFailed(t *testing.T) {
 	for _, line := range strings.Split(out.String(), "\n") {
 		if strings.HasPrefix(line, "cavity") && !strings.HasPrefix(line, "cavity     4") {
 			t.Errorf("the dimension of %q is not under its head", line)
-		}
-	}
-}
-
-func TestNumberHasNoMinusZero(t *testing.T) {
-	for x, want := range map[float64]string{-1e-9: "0.00", -0.006: "-0.01", 10: "10.00"} {
-		if got := number(report.Number(x), 2); got != want {
-			t.Errorf("number(%g) = %q, want %q", x, got, want)
 		}
 	}
 }

@@ -1,4 +1,4 @@
-package main
+package trials
 
 import (
 	"bytes"
@@ -10,9 +10,9 @@ import (
 )
 
 func TestMeterEstimatesTimeLeft(t *testing.T) {
-	cases := []problemCase{{choice: choice{"a", 2}}, {choice: choice{"b", 4}}}
+	cases := []Case{{Choice: Choice{"a", 2}}, {Choice: Choice{"b", 4}}}
 	var out bytes.Buffer
-	m := newMeter(&out, cases, options{seeds: 4, workers: 2})
+	m := NewMeter(&out, cases, 4, 2)
 	now := time.Unix(0, 0)
 	m.now = func() time.Time { return now }
 	m.began = now
@@ -30,7 +30,7 @@ func TestMeterEstimatesTimeLeft(t *testing.T) {
 		t.Errorf("%v left, want 190 s", left)
 	}
 	now = now.Add(10 * time.Second)
-	m.end(0, oneRun{finished: true, seconds: 20})
+	m.end(0, true)
 	// One ended, one half done by its own word, two not begun.
 	if left, _ := m.left(now); left != time.Duration((2.5*20+4*80)/2*float64(time.Second)) {
 		t.Errorf("%v left, want 185 s", left)
@@ -43,9 +43,9 @@ func TestMeterEstimatesTimeLeft(t *testing.T) {
 }
 
 func TestMeterIsQuietBetweenLines(t *testing.T) {
-	cases := []problemCase{{choice: choice{"a", 2}}}
+	cases := []Case{{Choice: Choice{"a", 2}}}
 	var out bytes.Buffer
-	m := newMeter(&out, cases, options{seeds: 4, workers: 1})
+	m := NewMeter(&out, cases, 4, 1)
 	now := time.Unix(0, 0)
 	m.now = func() time.Time { return now }
 	m.begin(0, 0)

@@ -1,4 +1,4 @@
-package main
+package trials
 
 import (
 	"fmt"
@@ -9,14 +9,14 @@ import (
 	"knell/internal/report"
 )
 
-// meter tells how far the runs are. Safe for concurrent use.
-type meter struct {
+// Meter tells how far the runs are, as a line of progress. Safe for concurrent use.
+type Meter struct {
 	now func() time.Time
 
 	mu     sync.Mutex
 	status report.StatusLine
-	cases  []problemCase
-	seeds  int
+	cases  []Case
+	runs   int       // per case
 	ended  []int     // runs per case
 	spent  []float64 // seconds of those
 	active []activity
@@ -31,24 +31,28 @@ type activity struct {
 	fraction float64
 }
 
-func newMeter(out io.Writer, cases []problemCase, o options) *meter {
-	m := &meter{
-		status: report.NewStatusLine(out), now: time.Now, cases: cases, seeds: o.seeds,
-		ended: make([]int, len(cases)), spent: make([]float64, len(cases)), active: make([]activity, o.workers),
+// NewMeter returns a meter for so many runs of each case on so many workers. Its line
+// goes to out.
+func NewMeter(out io.Writer, cases []Case, runs, workers int) *Meter {
+	m := &Meter{
+		status: report.NewStatusLine(out), now: time.Now, cases: cases, runs: runs,
+		ended: make([]int, len(cases)), spent: make([]float64, len(cases)), active: make([]activity, workers),
 	}
 	m.began = m.now()
 	return m
 }
 
+func (m *Meter) workers() int { return len(m.active) }
+
 // begin notes that a worker takes a run of a case.
-func (m *meter) begin(worker, of int) {
+func (m *Meter) begin(worker, of int) {
 	m.mu.Lock()
 	defer m.mu.Unlock()
 	m.active[worker] = activity{running: true, of: of, began: m.now()}
 }
 
 // update notes how far a worker's run is.
-func (m *meter) update(worker int, fraction float64) {
+func (m *Meter) update(worker int, fraction float64) {
 	m.mu.Lock()
 	defer m.mu.Unlock()
 	m.active[worker].fraction = fraction
@@ -56,27 +60,31 @@ func (m *meter) update(worker int, fraction float64) {
 }
 
 // end notes that a worker's run is over.
-func (m *meter) end(worker int, r oneRun) {
+func (m *Meter) end(worker int, finished bool) {
 	m.mu.Lock()
 	defer m.mu.Unlock()
 	a := &m.active[worker]
 	a.running = false
-	if r.finished {
+	if finished {
 		m.ended[a.of]++
-		m.spent[a.of] += r.seconds
-		m.show(a.of, m.ended[a.of] == m.seeds)
+		m.spent[a.of] += m.now().Sub(a.began).Seconds()
+		m.show(a.of, m.ended[a.of] == m.runs)
 	}
 }
 
-// done takes the line away from a terminal.
-func (m *meter) done() {
+// Above prints something else on the terminal: the line is taken away first.
+func (m *Meter) Above(print func()) {
 	m.mu.Lock()
 	defer m.mu.Unlock()
 	m.status.Clear()
+	print()
 }
 
+// Done takes the line away from a terminal.
+func (m *Meter) Done() { m.Above(func() {}) }
+
 // show prints the state of a case if the last line is old enough, or at once.
-func (m *meter) show(of int, once bool) {
+func (m *Meter) show(of int, once bool) {
 	now := m.now()
 	if once || m.status.Due(now) {
 		m.status.Show(now, m.line(of, now))
@@ -84,16 +92,16 @@ func (m *meter) show(of int, once bool) {
 }
 
 // line says how far case number at is, and the whole.
-func (m *meter) line(at int, now time.Time) string {
+func (m *Meter) line(at int, now time.Time) string {
 	total := 0
 	for _, n := range m.ended {
 		total += n
 	}
 	c := m.cases[at]
-	text := fmt.Sprintf("%s/%d: %d of %d runs; in all %d of %d, %s gone", c.name, c.dim, m.ended[at], m.seeds,
-		total, m.seeds*len(m.cases), report.Clock(now.Sub(m.began)))
+	text := fmt.Sprintf("%s/%d: %d of %d runs; in all %d of %d, %s gone", c.Name, c.Dim, m.ended[at], m.runs,
+		total, m.runs*len(m.cases), report.Clock(now.Sub(m.began)))
 	if left, ok := m.left(now); ok {
-		text += ", about " + report.Clock(left) + " left"
+		text += fmt.Sprintf(", about %s left, until %s", report.Clock(left), now.Add(left).Format("15:04"))
 	}
 	return text
 }
@@ -102,7 +110,7 @@ func (m *meter) line(at int, now time.Time) string {
 // for each more, one that only has begun some what those seem to take; the others
 // are guessed to need a time that grows as the square of the dimension, on
 // the scale of those that are known.
-func (m *meter) left(now time.Time) (time.Duration, bool) {
+func (m *Meter) left(now time.Time) (time.Duration, bool) {
 	each := make([]float64, len(m.cases)) // seconds per run
 	gone := make([]float64, len(m.cases)) // runs' worth of work under way
 	var seconds, squares float64
@@ -121,7 +129,7 @@ func (m *meter) left(now time.Time) (time.Duration, bool) {
 		}
 		if each[i] > 0 {
 			seconds += each[i]
-			squares += float64(c.dim * c.dim)
+			squares += float64(c.Dim * c.Dim)
 		}
 	}
 	if seconds == 0 {
@@ -130,9 +138,9 @@ func (m *meter) left(now time.Time) (time.Duration, bool) {
 	var left float64
 	for i, c := range m.cases {
 		if each[i] == 0 {
-			each[i] = seconds / squares * float64(c.dim*c.dim)
+			each[i] = seconds / squares * float64(c.Dim*c.Dim)
 		}
-		left += each[i] * max(0, float64(m.seeds-m.ended[i])-gone[i])
+		left += each[i] * max(0, float64(m.runs-m.ended[i])-gone[i])
 	}
 	return time.Duration(left / float64(len(m.active)) * float64(time.Second)), true
 }
