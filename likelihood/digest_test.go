@@ -5,8 +5,7 @@ import (
 	"testing"
 )
 
-// TestDigest: equal data have one digest, whichever part changes by one unit in the
-// last place gives another.
+// TestDigest: equal data have one digest, and a small change of any part gives another.
 func TestDigest(t *testing.T) {
 	digest := func(p problem) [32]byte {
 		t.Helper()

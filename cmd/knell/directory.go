@@ -15,10 +15,12 @@ const resultsFolder = "weighed"
 
 // claimDirectory makes the directory for a result. Without a name it is a new one
 // called after the event; a named one must not hold a result unless replace is
-// set. Nothing already computed is overwritten unasked.
+// set, or unless states of an unfinished weighing lie beside it: that is then gone on
+// with, and what it had reached is what stands there. Nothing already computed is
+// overwritten unasked.
 func claimDirectory(name, slug string, replace bool) (string, error) {
 	if name != "" {
-		if _, err := os.Stat(filepath.Join(name, report.EvidenceFile)); err == nil && !replace {
+		if _, err := os.Stat(filepath.Join(name, report.EvidenceFile)); err == nil && !replace && !holdsStates(name) {
 			return "", &usageError{fmt.Sprintf("--out %s holds a result, want an empty or new directory, or --replace", name)}
 		}
 		if err := os.MkdirAll(name, 0o777); err != nil {

@@ -1,8 +1,10 @@
 package main
 
 import (
+	"errors"
 	"fmt"
 	"os"
+	"time"
 
 	"github.com/urfave/cli/v2"
 
@@ -16,10 +18,11 @@ func weighCommand() *cli.Command {
 		Usage:     "compute the evidence of each hypothesis about one event and their ratios",
 		ArgsUsage: "[EVENT.toml]",
 		Description: "Without a file the embedded demo event is weighed. Results go into a directory;\n" +
-			"the table goes to standard output, progress to standard error.",
+			"the table goes to standard output, progress to standard error. A weighing that was\n" +
+			"stopped goes on with the same event and options and --out its directory.",
 		Flags: append(inputFlags(),
 			&cli.StringFlag{Name: "out", Usage: "the result `DIRECTORY`; default: a new one under weighed/"},
-			&cli.BoolFlag{Name: "replace", Usage: "let --out hold an earlier result, which is overwritten"},
+			&cli.BoolFlag{Name: "replace", Usage: "let --out hold an earlier result or an unfinished weighing, which is begun anew"},
 			&cli.IntFlag{Name: "workers", Usage: "likelihoods computed at once, default one per core; the result does not depend on it"},
 			&cli.BoolFlag{Name: "quiet", Usage: "no progress"},
 			jsonFlag()),
@@ -47,11 +50,65 @@ func weigh(c *cli.Context) error {
 	if err != nil {
 		return err
 	}
-	options := event.Options{Version: c.App.Version, Workers: c.Int("workers")}
-	done := func() {}
+	kept, err := claimStates(directory, c.Bool("replace"))
+	if err != nil {
+		return err
+	}
+	result, posteriors, failure := sample(c, prepared, directory, kept)
+	if refused := refusal(failure); refused != nil || failure != nil && len(result.Hypotheses) == 0 {
+		if c.String("out") == "" {
+			// Made for nothing; if it is no longer empty it stays.
+			failure = errors.Join(failure, kept.discard(), kept.release())
+			_ = os.Remove(directory)
+			return failure
+		}
+		if refused != nil {
+			failure = refused
+		}
+		return errors.Join(failure, kept.release())
+	}
+	for i := range result.Hypotheses {
+		result.Hypotheses[i].Posterior = report.PosteriorFile(result.Hypotheses[i].Name, ".csv")
+	}
+	if err := report.WriteDirectory(directory, result, posteriors, config.AsRun()); err != nil {
+		return errors.Join(err, kept.release())
+	}
+	interrupted := result.Partial && c.Context.Err() != nil
+	if failure == nil && !interrupted {
+		// Nothing is left to go on with.
+		err = kept.discard()
+	}
+	if err = errors.Join(err, kept.release(), show(c, result, directory), failure); err != nil {
+		return err
+	}
+	if interrupted {
+		fmt.Fprintf(c.App.ErrWriter, "go on with: %s\n", goOn(c, directory))
+		return errInterrupted
+	}
+	return nil
+}
+
+// keepEvery is the key under which a context may carry the least time between two kept
+// states, a time.Duration.
+type keepEvery struct{}
+
+// sample carries out the weighing, with its progress on standard error.
+func sample(c *cli.Context, prepared *event.Prepared, directory string, kept *states) (*report.Weighing, []report.Posterior, error) {
+	every, _ := c.Context.Value(keepEvery{}).(time.Duration)
+	options := event.Options{
+		Version: c.App.Version, Workers: c.Int("workers"),
+		Keeper: kept.keeper, KeepEvery: every,
+	}
+	note := func(text string) { fmt.Fprintln(c.App.ErrWriter, text) }
 	if !c.Bool("quiet") {
+		note(fmt.Sprintf("writes to %s; once stopped, it goes on with --out %s", directory, quote(directory)))
+		options.Resumed = func(hypothesis string, calls int64) {
+			note(fmt.Sprintf("goes on from %s likelihood calls of %s", thousands(calls), hypothesis))
+		}
 		meter := report.NewMeter(c.App.ErrWriter)
-		done = meter.Done
+		// Before the table, which may go to the same terminal.
+		defer meter.Done()
+		note = meter.Note
 		options.Progress = func(p event.Progress) {
 			label := p.Hypothesis
 			if p.Count > 1 {
@@ -63,41 +120,21 @@ func weigh(c *cli.Context) error {
 			})
 		}
 	}
-	result, posteriors, failure := prepared.Weigh(c.Context, options)
-	// Before the table, which may go to the same terminal.
-	done()
-	if failure != nil && len(result.Hypotheses) == 0 {
-		if c.String("out") == "" {
-			// Made for nothing; if it is no longer empty it stays.
-			_ = os.Remove(directory)
-		}
-		return failure
-	}
-	for i := range result.Hypotheses {
-		result.Hypotheses[i].Posterior = report.PosteriorFile(result.Hypotheses[i].Name, ".csv")
-	}
-	if err := report.WriteDirectory(directory, result, posteriors, config.AsRun()); err != nil {
-		return err
-	}
+	return prepared.Weigh(c.Context, options)
+}
+
+// show prints the result as the command line asks.
+func show(c *cli.Context, result *report.Weighing, directory string) error {
 	if c.Bool("json") {
-		err = result.WriteJSON(c.App.Writer)
-		if err == nil && !c.Bool("quiet") {
-			_, err = fmt.Fprintf(c.App.ErrWriter, "written to %s\n", directory)
+		if err := result.WriteJSON(c.App.Writer); err != nil || c.Bool("quiet") {
+			return err
 		}
-	} else {
-		err = report.Table(c.App.Writer, result)
-		if err == nil {
-			_, err = fmt.Fprintf(c.App.Writer, "\nwritten to %s\n", directory)
-		}
-	}
-	if err != nil {
+		_, err := fmt.Fprintf(c.App.ErrWriter, "written to %s\n", directory)
 		return err
 	}
-	if failure != nil {
-		return failure
+	if err := report.Table(c.App.Writer, result); err != nil {
+		return err
 	}
-	if result.Partial && c.Context.Err() != nil {
-		return errInterrupted
-	}
-	return nil
+	_, err := fmt.Fprintf(c.App.Writer, "\nwritten to %s\n", directory)
+	return err
 }

@@ -11,6 +11,8 @@ import (
 	"os"
 	"path/filepath"
 	"runtime"
+
+	"knell/sampler"
 )
 
 const (
@@ -20,11 +22,11 @@ const (
 	lengthAt = len(magic) + 4
 	sumAt    = lengthAt + 8
 	headerAt = sumAt + sha256.Size // where the state begins
-
-	// pendingSuffix marks a state that is being written. The name is always the
-	// same, so what a killed process left is overwritten by the next Save.
-	pendingSuffix = ".new"
 )
+
+// PendingSuffix follows the name of a file whose state is being written. The name is
+// always the same, so what a killed process left is overwritten by the next Save.
+const PendingSuffix = ".new"
 
 // FileError is a file that holds no whole state.
 type FileError struct {
@@ -40,6 +42,8 @@ func (e *FileError) Error() string {
 type File struct {
 	path string
 }
+
+var _ sampler.Keeper = (*File)(nil)
 
 // New returns the file at path, whose directory must exist when Save is called.
 func New(path string) *File { return &File{path} }
@@ -112,7 +116,7 @@ func (f *File) Save(state []byte) (err error) {
 	sum := checksum(header, state)
 	header = append(header, sum[:]...)
 
-	pending := f.path + pendingSuffix
+	pending := f.path + PendingSuffix
 	opened, err := os.OpenFile(pending, os.O_CREATE|os.O_TRUNC|os.O_WRONLY, 0o666)
 	if err != nil {
 		return err
@@ -148,7 +152,7 @@ func (f *File) Save(state []byte) (err error) {
 // Remove takes away the state and what an interrupted Save left of one.
 func (f *File) Remove() error {
 	var list []error
-	for _, path := range []string{f.path, f.path + pendingSuffix} {
+	for _, path := range []string{f.path, f.path + PendingSuffix} {
 		if err := os.Remove(path); err != nil && !errors.Is(err, fs.ErrNotExist) {
 			list = append(list, err)
 		}

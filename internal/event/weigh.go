@@ -19,6 +19,15 @@ type Options struct {
 	Workers int // 0: one per core; the result does not depend on it
 	// Progress, if not nil, hears how far the sampling is.
 	Progress func(Progress)
+	// Keeper, if not nil, gives the place where the state of a hypothesis's sampling
+	// is kept while Weigh runs, each its own. Weigh goes on from what it finds there,
+	// to the bits of a run without a break, and leaves the states where they are.
+	Keeper func(hypothesis string) sampler.Keeper
+	// KeepEvery is the least time between two states, 0 for the sampler's default.
+	KeepEvery time.Duration
+	// Resumed, if not nil, hears before any sampling of each kept state that Weigh
+	// goes on from, and how many likelihood calls it holds.
+	Resumed func(hypothesis string, calls int64)
 }
 
 // Progress is how far one hypothesis's sampling is.
@@ -30,7 +39,9 @@ type Progress struct {
 
 // Weigh samples every hypothesis and compares them. A cancelled context ends it
 // with a valid result of what was reached, marked as partial. So does an error,
-// which comes with the hypotheses that were weighed before it.
+// which comes with the hypotheses that were weighed before it. A kept state that Weigh
+// cannot go on from is a *StateError before any sampling, except where only the sampler
+// can tell: then it is a *sampler.ResumeError when the hypothesis's turn comes.
 func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []report.Posterior, error) {
 	c := p.Config
 	w := &report.Weighing{
@@ -41,16 +52,25 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 		Sites:            p.sites,
 		Cautions:         append([]string(nil), p.Notes...),
 	}
+	keepers, err := p.keepers(o)
+	if err != nil {
+		w.Partial = true
+		w.Cautions = append(w.Cautions, err.Error())
+		return w, nil, err
+	}
 	var posteriors []report.Posterior
 	var failure error
 	for i, h := range p.hypotheses {
-		if ctx.Err() != nil {
+		k := keepers[i]
+		// What is kept of a hypothesis belongs into the result, whenever the
+		// interruption came.
+		if ctx.Err() != nil && !k.held() {
 			w.Partial = true
 			w.Cautions = append(w.Cautions, fmt.Sprintf("interrupted before hypothesis %s was weighed", h.Name))
 			continue
 		}
-		began := time.Now()
-		outcome, err := sampler.Run(ctx, h.newTarget, sampler.Settings{
+		k.begin()
+		settings := sampler.Settings{
 			// A hypothesis keeps its stream whichever others stand beside it.
 			Seed:          random.New(c.Seed, "hypothesis "+h.Name).Uint64(),
 			LivePoints:    c.Sampler.LivePoints,
@@ -59,12 +79,18 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 			MaxCalls:      c.Sampler.MaxCalls,
 			Workers:       o.Workers,
 			Periodic:      h.periodic,
+			KeepEvery:     o.KeepEvery,
 			Progress: func(s sampler.Progress) {
+				k.calls = s.Calls
 				if o.Progress != nil {
 					o.Progress(Progress{h.Name, i, len(p.hypotheses), s})
 				}
 			},
-		})
+		}
+		if k.place != nil {
+			settings.Keeper, settings.Problem = k, k.Identity.problem()
+		}
+		outcome, err := sampler.Run(ctx, h.newTarget, settings)
 		if err != nil && ctx.Err() != nil && errors.Is(err, ctx.Err()) {
 			w.Partial = true
 			w.Cautions = append(w.Cautions, fmt.Sprintf("interrupted before hypothesis %s had its first live points", h.Name))
@@ -79,6 +105,10 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 			var warnings []string
 			entry.Routes, warnings, err = p.routes(ctx, h, outcome, o.Workers)
 			entry.Warnings = append(entry.Warnings, warnings...)
+			if err == nil && ctx.Err() != nil && !outcome.Partial {
+				w.Partial = true
+				w.Cautions = append(w.Cautions, fmt.Sprintf("interrupted while the evidence of %s was found by further routes", h.Name))
+			}
 		}
 		if err != nil {
 			failure = fmt.Errorf("hypothesis %s: %w", h.Name, err)
@@ -86,7 +116,7 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 			w.Cautions = append(w.Cautions, failure.Error())
 			break
 		}
-		entry.Seconds = report.Number(time.Since(began).Seconds())
+		entry.Seconds = report.Number(k.seconds())
 		w.Partial = w.Partial || outcome.Partial
 		w.Hypotheses = append(w.Hypotheses, entry)
 		posteriors = append(posteriors, posterior)
@@ -102,6 +132,28 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 	}
 	w.Cautions = append(w.Cautions, cautions(w)...)
 	return w, posteriors, failure
+}
+
+// keepers reads what is kept of every hypothesis, so that what cannot be gone on with is
+// known before any work.
+func (p *Prepared) keepers(o Options) ([]*keeper, error) {
+	list := make([]*keeper, len(p.hypotheses))
+	for i, h := range p.hypotheses {
+		list[i] = new(keeper)
+		if o.Keeper == nil {
+			continue
+		}
+		var err error
+		if list[i], err = newKeeper(o.Keeper(h.Name), p.identity(h, o.Version)); err != nil {
+			return nil, err
+		}
+	}
+	for i, h := range p.hypotheses {
+		if list[i].held() && o.Resumed != nil {
+			o.Resumed(h.Name, list[i].calls)
+		}
+	}
+	return list, nil
 }
 
 // fewSamples is the effective number of posterior samples below which the ends of

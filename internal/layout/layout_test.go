@@ -58,6 +58,8 @@ var rules = []rule{
 	{folder: "internal/constants"},
 	{folder: "internal/random"},
 	{folder: "internal/report", allow: []string{"internal/constants"}, forbid: join(toml, flags)},
+	// The sampler declares what a keeper of states is.
+	{folder: "internal/checkpoint", allow: []string{"sampler"}, forbid: join(toml, flags)},
 	{folder: "internal/event", allow: append([]string{"configs", "internal/report"}, below...), forbid: flags},
 	{folder: "internal", allow: append([]string{"configs", "internal"}, below...), forbid: flags},
 	{folder: "validation", allow: append([]string{"configs", "internal/event", "internal/report"}, below...)},
@@ -239,6 +241,9 @@ func TestCheckSeesPlantedImports(t *testing.T) {
 		{"internal/report/a.go", "knell/sampler", true},
 		{"internal/report/a.go", "knell/likelihood/site", true},
 		{"internal/report/a.go", "knell/models", true},
+		{"internal/checkpoint/a.go", "knell/sampler", false},
+		{"internal/checkpoint/a.go", "knell/internal/event", true},
+		{"internal/event/a.go", "knell/internal/checkpoint", true},
 		{"internal/event/a.go", "knell/sampler", false},
 		{"internal/event/a.go", "knell/cmd/knell", true},
 		{"internal/event/a.go", "knell/validation", true},
