@@ -64,8 +64,8 @@ func (s *states) keeper(hypothesis string) sampler.Keeper {
 // well.
 func (s *states) discard() error {
 	entries, err := os.ReadDir(s.folder)
-	if err != nil {
-		return err
+	if errors.Is(err, fs.ErrNotExist) {
+		return nil
 	}
 	for _, e := range entries {
 		if name, ok := strings.CutSuffix(strings.TrimSuffix(e.Name(), checkpoint.PendingSuffix), stateSuffix); ok {

@@ -120,6 +120,13 @@ func sample(c *cli.Context, prepared *event.Prepared, directory string, kept *st
 			})
 		}
 	}
+	warned := false
+	options.NotKept = func(hypothesis string, err error) {
+		if !warned {
+			note(fmt.Sprintf("knell: warning: the state of %s cannot be kept, and the run goes on without: %v", hypothesis, err))
+		}
+		warned = true
+	}
 	return prepared.Weigh(c.Context, options)
 }
 

@@ -33,6 +33,8 @@ type keeper struct {
 	loaded []byte // the sampler's state, until the sampler asks for it
 	calls  int64  // so far, as the sampler last told
 	began  time.Time
+	// notKept, if not nil, hears of states that place did not take.
+	notKept func(hypothesis string, err error)
 }
 
 var _ sampler.Keeper = (*keeper)(nil)
@@ -92,5 +94,9 @@ func (k *keeper) Save(state []byte) error {
 	}
 	text := make([]byte, 0, len(line)+1+len(state))
 	text = append(append(text, line...), '\n')
-	return k.place.Save(append(text, state...))
+	err = k.place.Save(append(text, state...))
+	if err != nil && k.notKept != nil {
+		k.notKept(k.Identity.Hypothesis, err)
+	}
+	return err
 }

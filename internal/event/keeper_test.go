@@ -3,6 +3,7 @@ package event
 import (
 	"context"
 	"errors"
+	"slices"
 	"strings"
 	"testing"
 
@@ -11,11 +12,9 @@ import (
 
 // drawer keeps a state in memory.
 type drawer struct {
-	state      []byte
-	loadError  error
-	saveError  error
-	saved      int
-	afterwards func(saved int)
+	state     []byte
+	loadError error
+	saveError error
 }
 
 func (d *drawer) Load() ([]byte, error) { return d.state, d.loadError }
@@ -25,10 +24,6 @@ func (d *drawer) Save(state []byte) error {
 		return d.saveError
 	}
 	d.state = append([]byte(nil), state...)
-	d.saved++
-	if d.afterwards != nil {
-		d.afterwards(d.saved)
-	}
 	return nil
 }
 
@@ -67,6 +62,15 @@ func TestKeeper(t *testing.T) {
 	}
 	if next.held() {
 		t.Error("still held after it was given away")
+	}
+
+	// A state that is not taken is heard of.
+	var heard []string
+	next.notKept = func(hypothesis string, err error) { heard = append(heard, hypothesis+": "+err.Error()) }
+	before := string(d.state)
+	d.saveError = errors.New("no room")
+	if err := next.Save([]byte("x")); err != d.saveError || string(d.state) != before || !slices.Equal(heard, []string{"horizon: no room"}) {
+		t.Errorf("got %v, heard %q", err, heard)
 	}
 
 	for why, tc := range map[string]struct {

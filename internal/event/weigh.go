@@ -25,6 +25,8 @@ type Options struct {
 	Keeper func(hypothesis string) sampler.Keeper
 	// KeepEvery is the least time between two states, 0 for the sampler's default.
 	KeepEvery time.Duration
+	// NotKept, if not nil, hears of each state that could not be kept; Weigh goes on.
+	NotKept func(hypothesis string, err error)
 	// Resumed, if not nil, hears before any sampling of each kept state that Weigh
 	// goes on from, and how many likelihood calls it holds.
 	Resumed func(hypothesis string, calls int64)
@@ -147,6 +149,7 @@ func (p *Prepared) keepers(o Options) ([]*keeper, error) {
 		if list[i], err = newKeeper(o.Keeper(h.Name), p.identity(h, o.Version)); err != nil {
 			return nil, err
 		}
+		list[i].notKept = o.NotKept
 	}
 	for i, h := range p.hypotheses {
 		if list[i].held() && o.Resumed != nil {
