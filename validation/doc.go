@@ -11,6 +11,17 @@
 //     and gives each run's difference from the truth over its quoted error;
 //     UnitNormal says whether they can be a unit normal's.
 //
+// Three commands stand below it:
+//
+//   - evidence holds the sampler's log-evidences against problems of known truth
+//     (package problems), each over many seeds.
+//   - growth compares runs that grow towards a target with static ones.
+//   - timing simulates the sampler's schedule, for the efficiency to expect of
+//     many workers.
+//
+// What they share, the choice of problems and the running of many seeds, is in
+// package trials.
+//
 // The rest is in tests alone: the remnant's published numbers as the models give
 // them (remnant_test.go), the gate on a signal that began before the analysis
 // (gate_test.go), and real strain from a folder that the environment names

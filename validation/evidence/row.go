@@ -12,16 +12,6 @@ import (
 	"knell/validation/trials"
 )
 
-const (
-	// Limits of the standard deviation of z, and the number of seeds from which
-	// on they hold as they are. With fewer, its sampling error widens them.
-	deviationLow, deviationHigh = 0.85, 1.15
-	fullSeeds                   = 100
-
-	// leastP is the p-value below which ranks or shrinkages are not uniform.
-	leastP = 0.001
-)
-
 // row is a problem's line of the table. Log-evidences are in nats; z is (ln Z -
 // truth) / error of one run.
 type row struct {
@@ -33,13 +23,7 @@ type row struct {
 	// Remaining is given where the runs were told to go on further than by default.
 	Remaining float64 `json:"remaining,omitempty"`
 
-	MeanZ      report.Number `json:"mean_z"`
-	MeanZError report.Number `json:"mean_z_error"`
-	MeanZLimit report.Number `json:"mean_z_limit"`
-	StdZ       report.Number `json:"std_z"`
-	StdZError  report.Number `json:"std_z_error"`
-	StdZLow    report.Number `json:"std_z_low"`
-	StdZHigh   report.Number `json:"std_z_high"`
+	trials.Calibration
 	Difference report.Number `json:"mean_difference"` // ln Z - truth
 	Error      report.Number `json:"mean_error"`      // as quoted
 	Wanted     float64       `json:"wanted_error,omitempty"`
@@ -75,7 +59,6 @@ func newRow(c trials.Case, o options, runs []oneRun) row {
 	nan := report.Number(math.NaN())
 	r := row{
 		Name: c.Name, Dim: c.Dim, Truth: report.Number(c.Truth), Source: c.Source, Remaining: c.Remaining, Aim: aim(c.Choice),
-		MeanZ: nan, MeanZError: nan, MeanZLimit: nan, StdZ: nan, StdZError: nan, StdZLow: nan, StdZHigh: nan,
 		Difference: nan, Error: nan, Calls: nan, IdealRatio: nan, RankP: nan,
 		Shrinkage: nan, ShrinkageError: nan, ShrinkageP: nan, Seconds: nan,
 		Drawing: []drawing{}, Faults: []string{},
@@ -125,40 +108,19 @@ func newRow(c trials.Case, o options, runs []oneRun) row {
 		r.Calls, r.IdealRatio = report.Number(calls/n), report.Number(calls/points)
 		r.Seconds, r.Error, r.Difference = report.Number(seconds/n), report.Number(errs/n), report.Number(differs/n)
 	}
-	r.judgeZ(pulls)
+	var faults []string
+	r.Calibration, faults = trials.Calibrate(pulls)
+	r.Faults = append(r.Faults, faults...)
 	r.judgeDraws(rankP, shrinks)
 	r.Passed = len(r.Faults) == 0
 	return r
-}
-
-// judgeZ sets what is known of z and notes faults in it.
-func (r *row) judgeZ(pulls []validation.Pull) {
-	if len(pulls) < 2 {
-		r.Faults = append(r.Faults, fmt.Sprintf("runs to judge by: %d, want 2 at least", len(pulls)))
-		return
-	}
-	u := validation.UnitNormal(pulls)
-	low, high := deviationLow, deviationHigh
-	if len(pulls) < fullSeeds {
-		low, high = min(low, u.Low), max(high, u.High)
-	}
-	n := float64(len(pulls))
-	r.MeanZ, r.MeanZError, r.MeanZLimit = report.Number(u.Mean), report.Number(u.Deviation/math.Sqrt(n)), report.Number(u.MeanLimit)
-	r.StdZ, r.StdZError = report.Number(u.Deviation), report.Number(u.Deviation/math.Sqrt(2*(n-1)))
-	r.StdZLow, r.StdZHigh = report.Number(low), report.Number(high)
-	if !(math.Abs(u.Mean) <= u.MeanLimit) {
-		r.Faults = append(r.Faults, fmt.Sprintf("mean z %+.2f, want 0 ± %.2f", u.Mean, u.MeanLimit))
-	}
-	if !(u.Deviation >= low && u.Deviation <= high) {
-		r.Faults = append(r.Faults, fmt.Sprintf("deviation of z %.2f, want %.2f to %.2f", u.Deviation, low, high))
-	}
 }
 
 // judgeDraws sets what the insertion ranks and the shrinkages say of the draws.
 func (r *row) judgeDraws(rankP, shrinks []float64) {
 	p := validation.UniformP(rankP)
 	r.RankP = report.Number(p)
-	if p < leastP {
+	if p < trials.LeastP {
 		r.Faults = append(r.Faults, fmt.Sprintf("insertion ranks p = %.1g", p))
 	}
 	if len(shrinks) < 2 {
@@ -173,7 +135,7 @@ func (r *row) judgeDraws(rankP, shrinks []float64) {
 	}
 	p = validation.UniformP(uniform)
 	r.ShrinkageP = report.Number(p)
-	if p < leastP {
+	if p < trials.LeastP {
 		r.Faults = append(r.Faults, fmt.Sprintf("shrinkages p = %.1g, mean %.4f", p, mean))
 	}
 }

@@ -1,0 +1,107 @@
+package main
+
+import (
+	"bytes"
+	"context"
+	"encoding/json"
+	"io"
+	"strings"
+	"testing"
+)
+
+func documentOf(t *testing.T, args string) document {
+	t.Helper()
+	var out bytes.Buffer
+	run(context.Background(), strings.Fields(args+" --json"), &out, io.Discard)
+	var d document
+	if err := json.Unmarshal(out.Bytes(), &d); err != nil {
+		t.Fatalf("%s: %v in\n%s", args, err, out.String())
+	}
+	return d
+}
+
+// The short version of the table for evidences, of a peak and of a plateau.
+func TestGrowthForTheEvidence(t *testing.T) {
+	d := documentOf(t, "--use evidence --problems gaussian,half-plateau --dims 2 --seeds 6 --live 64 --seed 2")
+	if len(d.Problems) != 2 {
+		t.Fatalf("%d problems, want 2", len(d.Problems))
+	}
+	for _, r := range d.Problems {
+		if float64(r.Grown.Error) > float64(r.Goal) || r.Seeds != 6 {
+			t.Errorf("%s/%d: error %g of %d runs, want %g at most of 6", r.Name, r.Dim, r.Grown.Error, r.Seeds, r.Goal)
+		}
+		if !r.Passed {
+			t.Errorf("%s/%d: %q", r.Name, r.Dim, r.Faults)
+		}
+	}
+}
+
+func TestSameForAnyNumberOfWorkers(t *testing.T) {
+	var first bytes.Buffer
+	for _, workers := range []string{"1", "3"} {
+		var out bytes.Buffer
+		run(context.Background(), strings.Fields("--use evidence --problems gaussian --dims 2 --seeds 2 --live 40 --json --workers "+workers), &out, io.Discard)
+		if first.Len() == 0 {
+			first = out
+		}
+		if out.String() != first.String() {
+			t.Errorf("%s workers:\n%s\none worker:\n%s", workers, out.String(), first.String())
+		}
+	}
+}
+
+func TestTable(t *testing.T) {
+	var b bytes.Buffer
+	o := options{seeds: 20, live: 200, samples: 2000, share: 0.5}
+	table := newTable(&b, o, casesOf([]job{made(posteriorUse)}))
+	table.add(newRow(made(posteriorUse), o, madeRuns(posteriorUse, 20, 10_000, 0)))
+	table.add(newRow(made(evidenceUse), o, madeRuns(evidenceUse, 20, 60_000, 0)))
+	if err := table.end(true); err != nil {
+		t.Fatal(err)
+	}
+	for _, s := range []string{"20 of each, 200 live points", "posterior  made", "posterior variance: mean z", "FAIL: 1.", "INTERRUPTED", "  pass\n"} {
+		if !strings.Contains(b.String(), s) {
+			t.Errorf("no %q in\n%s", s, b.String())
+		}
+	}
+}
+
+func TestInterrupt(t *testing.T) {
+	ctx, cancel := context.WithCancel(context.Background())
+	cancel()
+	if status := run(ctx, strings.Fields("--use posterior --seeds 2"), io.Discard, io.Discard); status != interrupted {
+		t.Errorf("status %d, want %d", status, interrupted)
+	}
+}
+
+func TestBadOptions(t *testing.T) {
+	for _, tc := range []struct {
+		args string
+		says []string
+	}{
+		{"--use samples", []string{"--use", `"samples"`, "posterior, evidence"}},
+		{"--problems gauss", []string{"--problems", `"gauss"`, "gaussian, shells"}},
+		{"--seeds 1", []string{"--seeds", `"1"`, "2 to"}},
+		{"--live 31", []string{"--live", `"31"`, "32 to"}},
+		{"--use posterior --live 32", []string{"--live", "32", "at least 36", "8 dimensions"}},
+		{"--samples many", []string{"--samples", `"many"`, "100 to"}},
+		{"--share 1", []string{"--share", `"1"`, "0.1 to 0.9"}},
+		{"--workers 0", []string{"--workers", `"0"`, "1 to"}},
+		{"--seed -1", []string{"--seed", `"-1"`, "from 0"}},
+		{"--fast", []string{"-fast", "--use", "--json"}},
+		{"gaussian", []string{`"gaussian"`, "options"}},
+	} {
+		var out, errs bytes.Buffer
+		if status := run(context.Background(), strings.Fields(tc.args), &out, &errs); status != badUsage {
+			t.Errorf("%s: status %d, want %d", tc.args, status, badUsage)
+		}
+		for _, s := range tc.says {
+			if !strings.Contains(errs.String(), s) {
+				t.Errorf("%s: message %q, want %q in it", tc.args, errs.String(), s)
+			}
+		}
+		if out.Len() > 0 {
+			t.Errorf("%s: stdout has %q, want nothing", tc.args, out.String())
+		}
+	}
+}
