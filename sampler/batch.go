@@ -1,8 +1,8 @@
 package sampler
 
 import (
+	"cmp"
 	"context"
-	"errors"
 	"math"
 	"math/rand/v2"
 	"slices"
@@ -11,11 +11,11 @@ import (
 )
 
 const (
-	// A batch removes LivePoints/BatchShare live points at once, and up to
-	// InFlight batches of replacements are drawn at the same time.
+	// A batch removes LivePoints/BatchShare live points, and up to InFlight
+	// batches of replacements are drawn at the same time: a slow likelihood call
+	// holds up nobody until that many batches wait for it. The points in flight
+	// are not known yet, so more of them leave fewer to fit ellipsoids to.
 	BatchShare, InFlight = 32, 4
-
-	batchShare = 16
 
 	// rebuildStep is the compression, in nats, after which the ellipsoids are
 	// fitted anew. Until then they are too large by at most this much.
@@ -26,170 +26,257 @@ const (
 	slotPatience = 40
 )
 
-// runner is one run under way.
+// runner is the first run, or an addition to it, under way. Its live points are
+// those known, in order of rising likelihood and all above the threshold, and
+// those in flight. A point that lands below the threshold dies at once; the next
+// batch replaces it.
+//
+// Everything here between two steps is kept by a checkpoint (snapshot.go), and
+// what comes next follows from it alone.
 type runner struct {
-	pool *pool
-	set  Settings
-	dim  int
-	run  uint64
+	of     *growing
+	crew   *crew
+	set    Settings
+	dim    int
+	run    uint64 // number of the part, from 0
+	before int64  // likelihood calls of earlier parts
+	path   *path  // what an addition follows, nil in the first run
+	beside *companions
 
-	u []float64 // live points, n×dim, in order of rising likelihood
-	l []float64
-
-	birth   []float64 // of the live points, as Outcome.Birth and Outcome.Strand
-	strand  []int32
-	freed   []int32 // strands of the points removed last
-	strands int32   // begun so far
+	u         []float64 // known live points, n×dim
+	l         []float64
+	birth     []float64 // as Outcome.Birth and Outcome.Strand
+	strand    []int32
+	threshold float64 // of the last batch sent
+	freed     []int32 // strands without a live point, to be continued first
+	strands   int32   // begun so far
+	flights   []*flight
+	pending   int    // points in flight
+	batches   uint64 // sent
+	level     int    // next level of the path
+	ending    bool   // no further batch is sent
+	begun     bool
 
 	out   *Outcome
 	flat  []float64 // dead points, n×dim
 	phase [len(methodNames)]Phase
 
-	logX       float64 // expected ln of the volume above the last removed point
-	logZ       float64 // expected ln Z of the dead points
-	moment     float64 // sum of w L ln L / Z over the dead points, for the information
+	// Expected values by the known live points alone, without those that landed
+	// below the threshold: for choices on the way, not for the outcome.
+	logX   float64 // ln of the volume above the threshold
+	logZ   float64 // ln Z of the dead points
+	moment float64 // sum of w L ln L / Z over the dead points, for the information
+
 	bound      *bound
 	boundX     float64 // logX when it was built
 	sliceCalls float64 // measured calls per point by slices
 	memory     memory  // of slices, and how many steps they need
+	ranks      ranks
+	part       float64 // share of this run done, never falling
 
-	ranks ranks
-	fresh slots
-	prior ledger
-	part  float64 // share of this run done, never falling
+	// Memory used again.
+	spare              []*flight
+	stagingU, stagingL []float64
 }
 
-// slots are the results of a batch.
-type slots struct {
-	u     []float64
-	l     []float64
-	calls []int64
-	start []int // see worker.start
-}
-
-func (s *slots) resize(n, dim int) {
-	s.u = slices.Grow(s.u[:0], n*dim)[:n*dim]
-	s.l = slices.Grow(s.l[:0], n)[:n]
-	s.calls = slices.Grow(s.calls[:0], n)[:n]
-	s.start = slices.Grow(s.start[:0], n)[:n]
-}
-
-func newRunner(p *pool, s Settings, run int, prior ledger) *runner {
-	return &runner{
-		pool: p, set: s, dim: p.dim, run: uint64(run), prior: prior,
-		out:        &Outcome{seed: s.Seed, LivePoints: s.LivePoints, Runs: 1, periodic: s.Periodic},
+func newRunner(g *growing, path *path) *runner {
+	s, dim := g.set, g.pool.dim
+	r := &runner{
+		of: g, crew: g.crew, set: s, dim: dim, run: uint64(len(g.parts)), before: g.calls(), path: path,
+		out:        &Outcome{seed: s.Seed, periodic: s.Periodic},
 		logZ:       math.Inf(-1),
+		threshold:  math.Inf(-1),
 		sliceCalls: sliceCallsGuess * float64(s.SliceSteps),
-		memory:     newMemory(p.dim, s.SliceSteps),
+		memory:     newMemory(dim, s.SliceSteps),
 	}
+	if path == nil {
+		r.out.Runs, r.out.LivePoints = 1, s.LivePoints
+	} else {
+		r.out.LivePoints = path.first
+		r.beside = newCompanions(g.parts)
+	}
+	return r
 }
 
-// whole goes from the first live points to a weighed outcome.
-func (r *runner) whole(ctx context.Context) (*Outcome, error) {
-	if err := r.begin(ctx); err != nil {
-		return nil, err
+// step goes from one state worth keeping to the next: it takes in the oldest
+// batch if there are enough of them on their way, and sends another. It reports
+// false once all is done. An error leaves the state as it was.
+func (r *runner) step(ctx context.Context) (bool, error) {
+	switch {
+	case !r.begun:
+		if err := r.begin(ctx); err != nil {
+			return false, err
+		}
+		r.begun = true
+		return true, nil
+	case len(r.flights) == InFlight || r.ending && len(r.flights) > 0:
+		if err := r.land(); err != nil {
+			return false, err
+		}
+		return true, nil
+	case r.ending:
+		return false, nil
+	case r.path == nil:
+		return true, r.next(ctx)
 	}
-	for {
-		if r.remaining() < r.set.Remaining {
-			break
-		}
-		if most := r.set.MaxCalls; most != 0 && r.prior.calls+r.out.Calls >= most {
-			r.out.Status, r.out.Partial = CallLimit, true
-			r.out.note("the limit of %d calls was reached with ln(1 + Z'/Z) = %.3g nat remaining, %.3g wanted", most, r.remaining(), r.set.Remaining)
-			break
-		}
-		again, err := r.batch(ctx)
-		if err != nil {
-			if ctx.Err() == nil || !errors.Is(err, ctx.Err()) {
-				return nil, err
-			}
-			r.out.Status, r.out.Partial = Interrupted, true
-			r.out.note("interrupted with ln(1 + Z'/Z) = %.3g nat remaining, %.3g wanted", r.remaining(), r.set.Remaining)
-			break
-		}
-		if !again {
-			break
-		}
-	}
-	r.finish()
-	return r.out, nil
+	r.follow()
+	return true, nil
 }
 
-// batch removes the lowest live points and replaces them. It reports false if
-// all live points are on one plateau, and leaves the run unchanged on an error.
-func (r *runner) batch(ctx context.Context) (bool, error) {
+// next removes the lowest live points and sends a batch to replace them.
+func (r *runner) next(ctx context.Context) error {
+	if r.remaining() < r.set.Remaining {
+		r.ending = true
+		return nil
+	}
 	n := len(r.l)
-	k := max(1, min(r.set.LivePoints, n)/batchShare)
+	k := max(1, min(r.set.LivePoints, n)/BatchShare)
 	for k < n && r.l[k] == r.l[k-1] { // a plateau goes as a whole
 		k++
 	}
-	if k == n {
-		return false, nil
+	if k >= n {
+		// All that is known is one plateau. What is in flight may be above it.
+		if len(r.flights) > 0 {
+			return r.land()
+		}
+		r.ending = true
+		return nil
 	}
-	st := &stage{threshold: r.l[k-1], u: r.u[k*r.dim:], l: r.l[k:], steps: int(r.memory.steps)}
-	logX := r.logX
-	for i := range k {
-		logX -= 1 / float64(n-i)
+	r.threshold = r.l[k-1]
+	r.bury(k)
+	r.send(r.u, r.l, r.set.LivePoints-len(r.l)-r.pending)
+	return nil
+}
+
+// send begins a batch of count points above the threshold, given the live
+// points to start from.
+func (r *runner) send(u, l []float64, count int) {
+	f := r.newFlight()
+	f.batch, f.seed, f.run = r.batches, r.set.Seed, r.run
+	f.stage = stage{
+		threshold: r.threshold, steps: int(r.memory.steps),
+		u: append(f.stage.u[:0], u...), l: append(f.stage.l[:0], l...),
 	}
-	r.prepare(st, logX)
-	count := r.set.LivePoints - len(st.l)
-	r.fresh.resize(count, r.dim)
-	iteration := uint64(r.out.Iterations)
-	err := r.pool.each(ctx, count, func(w *worker, slot int) error {
-		rng := random.New(r.set.Seed, "draw", r.run, iteration, uint64(slot))
-		w.calls, w.start = 0, -1
-		l, err := w.draw(ctx, st, rng.Rand)
-		copy(r.fresh.u[slot*r.dim:], w.cube)
-		r.fresh.l[slot] = l
-		r.fresh.calls[slot] = w.calls
-		r.fresh.start[slot] = w.start
+	r.prepare(&f.stage)
+	f.strand = f.strand[:0]
+	for i := range count {
+		if i < len(r.freed) {
+			f.strand = append(f.strand, r.freed[i])
+			continue
+		}
+		f.strand = append(f.strand, r.strands)
+		r.strands++
+	}
+	r.freed = append(r.freed[:0], r.freed[min(count, len(r.freed)):]...)
+	r.batches++
+	r.pending += count
+	r.launch(f)
+	r.flights = append(r.flights, f)
+}
+
+func (r *runner) launch(f *flight) {
+	f.next, f.done, f.last, f.err, f.errSlot = 0, 0, 0, nil, 0
+	f.fresh.resize(f.count(), r.dim)
+	r.crew.send(f)
+}
+
+func (r *runner) newFlight() *flight {
+	if n := len(r.spare); n > 0 {
+		f := r.spare[n-1]
+		r.spare = r.spare[:n-1]
+		return f
+	}
+	return &flight{}
+}
+
+// land takes in the oldest batch.
+func (r *runner) land() error {
+	f := r.flights[0]
+	if err := r.crew.wait(f); err != nil {
 		return err
-	})
-	if err != nil {
-		return false, err
 	}
+	count := f.count()
 	var spent int64
-	for _, c := range r.fresh.calls {
+	for _, c := range f.fresh.calls {
 		spent += c
 	}
+	st := &f.stage
 	r.out.Calls += spent
 	r.phase[st.method].Calls += spent
 	r.phase[st.method].Points += int64(count)
 	calls := float64(spent) / float64(count)
 	if st.method == fromSlices {
 		r.sliceCalls += 0.2 * (calls - r.sliceCalls)
-		r.sliceCalls *= r.memory.learn(st, &r.fresh)
+		r.sliceCalls *= r.memory.learn(st, &f.fresh)
 	}
-	rng := random.New(r.set.Seed, "rank", r.run, iteration)
+	rng := random.New(r.set.Seed, "rank", r.run, f.batch)
 	r.ranks.begin(st.l)
-	for _, l := range r.fresh.l {
+	for _, l := range f.fresh.l {
 		r.ranks.enter(l, rng.Rand)
 	}
 	r.ranks.mark(st.method)
-	r.bury(k)
-	r.insert(st.threshold)
+	r.insert(f)
+	r.pending -= count
+	r.flights = append(r.flights[:0], r.flights[1:]...)
 	r.out.Iterations++
 	r.report(st.method, 1/calls)
-	return true, nil
+	r.spare = append(r.spare, f)
+	return nil
 }
 
-// prepare chooses how the batch draws.
-func (r *runner) prepare(st *stage, logX float64) {
-	enough := 2*len(st.l) >= r.set.LivePoints
-	if needs := math.Exp(-logX) > priorCalls; needs && enough && (r.bound == nil || r.boundX-logX > rebuildStep) {
+// prepare chooses how a batch is drawn.
+func (r *runner) prepare(st *stage) {
+	n := len(st.l)
+	enough := 2*n >= r.set.LivePoints
+	if needs := math.Exp(-r.logX) > priorCalls; needs && enough && (r.bound == nil || r.boundX-r.logX > rebuildStep) {
 		stream := func(i int) *rand.Rand {
-			return random.New(r.set.Seed, "bound", r.run, uint64(r.out.Iterations), uint64(i)).Rand
+			return random.New(r.set.Seed, "bound", r.run, r.batches, uint64(i)).Rand
 		}
-		if b := newBound(st.u, r.dim, logX, r.set.Periodic, r.bound, r.set.Workers, stream); b != nil {
-			r.bound, r.boundX = b, logX
+		if b := newBound(st.u, r.dim, r.logX, r.set.Periodic, r.bound, r.set.Workers, stream); b != nil {
+			r.bound, r.boundX = b, r.logX
 		}
 	}
 	slice := r.sliceCalls
-	if float64(len(st.l)) < fewSurvivors*float64(r.set.LivePoints) {
+	if float64(n) < fewSurvivors*float64(r.set.LivePoints) {
 		slice *= fewPenalty
 	}
 	var calls float64
 	st.bound = r.bound
-	st.method, calls = choose(logX, r.bound, slice, r.set.force)
+	st.method, calls = choose(r.logX, r.bound, slice, r.set.force)
 	st.limit = int64(slotPatience*calls) + 200
+}
+
+// insert merges the points of a flight into the sorted live ones. Those that the
+// threshold has passed in the meantime are dead.
+func (r *runner) insert(f *flight) {
+	order := make([]int, 0, f.count())
+	for i := range f.fresh.l {
+		order = append(order, i)
+	}
+	slices.SortStableFunc(order, func(a, b int) int { return cmp.Compare(f.fresh.l[a], f.fresh.l[b]) })
+	d := r.dim
+	late := 0
+	for ; late < len(order) && f.fresh.l[order[late]] <= r.threshold; late++ {
+		i := order[late]
+		r.dies(f.fresh.u[i*d:(i+1)*d], f.fresh.l[i], f.stage.threshold, f.strand[i])
+	}
+	order = order[late:]
+	old := len(r.l)
+	n := old + len(order)
+	r.u = slices.Grow(r.u, len(order)*d)[:n*d]
+	r.l = slices.Grow(r.l, len(order))[:n]
+	r.birth = slices.Grow(r.birth, len(order))[:n]
+	r.strand = slices.Grow(r.strand, len(order))[:n]
+	i, j := old-1, len(order)-1
+	for at := n - 1; j >= 0; at-- { // from the top, so that nothing is overwritten
+		if s := order[j]; i < 0 || f.fresh.l[s] >= r.l[i] {
+			r.l[at], r.birth[at], r.strand[at] = f.fresh.l[s], f.stage.threshold, f.strand[s]
+			copy(r.u[at*d:(at+1)*d], f.fresh.u[s*d:(s+1)*d])
+			j--
+		} else {
+			r.l[at], r.birth[at], r.strand[at] = r.l[i], r.birth[i], r.strand[i]
+			copy(r.u[at*d:(at+1)*d], r.u[i*d:(i+1)*d])
+			i--
+		}
+	}
 }

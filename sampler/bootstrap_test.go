@@ -148,8 +148,8 @@ func TestBootstrapBitsDoNotDependOnWorkers(t *testing.T) {
 		}
 		if workers == 1 {
 			want = o
-			if o.Runs < 2 || o.BootstrapError == 0 {
-				t.Fatalf("%d runs, bootstrap error %g", o.Runs, o.BootstrapError)
+			if o.LivePoints <= 80 || o.BootstrapError == 0 {
+				t.Fatalf("%d live points, bootstrap error %g", o.LivePoints, o.BootstrapError)
 			}
 			continue
 		}

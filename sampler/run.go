@@ -2,36 +2,22 @@ package sampler
 
 import (
 	"context"
+	"errors"
 	"fmt"
-	"math"
+	"time"
 )
-
-// Progress is the state of a run between two batches.
-type Progress struct {
-	Run       int   // number of the run, from 0
-	Iteration int   // batches of this run
-	Calls     int64 // likelihood calls of all runs
-
-	// Of all finished runs and this one, in nats, by the formula; the outcome
-	// has the simulated values.
-	LogEvidence, LogEvidenceError float64
-
-	LogLikelihood float64 // of the worst live point, nats
-	Remaining     float64 // ln(1 + Z'/Z), nats, see Settings.Remaining
-	Fraction      float64 // rough share of the work done, 0 to 1, never falling
-	Efficiency    float64 // accepted points per call in the last batch
-	Phase         string  // way of drawing of the last batch
-}
 
 // Run computes the evidence of the targets that newTarget makes, one per
 // worker, all of the same likelihood.
 //
-// Equal settings give equal bits, whatever the number of workers. A cancelled
-// context gives a Partial outcome and no error: the batch under way is dropped
+// Equal settings give equal bits, whatever the number of workers, and however
+// often the run was broken off and gone on with from its Keeper. A cancelled
+// context gives a Partial outcome and no error: the batches under way are dropped
 // and the live points are counted as they stand. Only if it comes before the
 // first live points are complete is there nothing to return but the context's
-// error. Other errors are a *SettingError, a *PointError, an error of newTarget,
-// or a likelihood that is zero wherever it was tried.
+// error. Other errors are a *SettingError, a *PointError, a *ResumeError, an
+// error of newTarget or of Keeper.Load, or a likelihood that is zero wherever it
+// was tried.
 func Run(ctx context.Context, newTarget func() (Target, error), s Settings) (*Outcome, error) {
 	first, err := newTarget()
 	if err != nil {
@@ -45,75 +31,193 @@ func Run(ctx context.Context, newTarget func() (Target, error), s Settings) (*Ou
 	if err != nil {
 		return nil, err
 	}
-	var (
-		parts []*Outcome
-		prior = ledger{wanted: 1}
-	)
+	g := &growing{set: s, pool: p, began: time.Now()}
+	if err := g.load(); err != nil {
+		return nil, err
+	}
+	// The goroutines end with this call, also on an error.
+	ctx, cancel := context.WithCancel(ctx)
+	defer cancel()
+	g.crew = newCrew(ctx, p)
+	defer g.crew.stop()
+	if r := g.current; r != nil { // what was in flight is drawn again
+		r.crew = g.crew
+		for _, f := range r.flights {
+			r.launch(f)
+		}
+	}
+	o, err := g.grow(ctx)
+	if o != nil && g.trouble != nil {
+		o.note("the state could not be kept, so a run that breaks off begins again further back: %v", g.trouble)
+		o.judge()
+	}
+	return o, err
+}
+
+// growing is a run with its additions.
+type growing struct {
+	set  Settings
+	pool *pool
+	crew *crew
+
+	parts   []*Outcome // the first run and its additions, not weighed
+	merged  int        // parts that the additions under way were planned by
+	current *runner    // under way, nil between two
+
+	// Not part of the state: what follows from it, and the clock.
+	whole   *Outcome // the merger of the first merged parts
+	left    []*path  // additions still to begin
+	limited bool
+	keeping
+	began   time.Time
+	earlier time.Duration // of the run before it was broken off
+	gauge   gauge
+}
+
+// grow takes the run to its end.
+func (g *growing) grow(ctx context.Context) (*Outcome, error) {
 	for {
-		r := newRunner(p, s, len(parts), prior)
-		part, err := r.whole(ctx)
+		r, err := g.begin()
 		if err != nil {
-			if ctx.Err() == nil || len(parts) == 0 {
-				return nil, err
+			return nil, err
+		}
+		if r == nil {
+			g.save()
+			return g.whole, nil
+		}
+		for more := true; more; {
+			g.limit()
+			if more, err = r.step(ctx); err != nil {
+				break
 			}
-			// The next run had no live points yet: what is there, stands.
-			return conclude(parts, s, Interrupted)
+			g.saveIfDue()
 		}
-		parts = append(parts, part)
-		prior.calls += part.Calls
-		prior.runs = len(parts)
-		prior.fraction = r.prior.fraction
 		switch {
-		case part.Status != Converged || s.EvidenceError == 0:
-			return merge(parts, s.Workers)
-		case s.MaxCalls != 0 && prior.calls+int64(s.LivePoints) > s.MaxCalls:
-			return conclude(parts, s, CallLimit)
-		case len(parts) < prior.wanted:
-			continue
+		case err == nil:
+			g.parts = append(g.parts, r.finish())
+			g.current = nil
+		case ctx.Err() != nil && errors.Is(err, ctx.Err()):
+			return g.interrupted(err)
+		default:
+			return nil, err
 		}
-		result, err := merge(parts, s.Workers)
-		if err != nil || result.LogEvidenceError <= s.EvidenceError {
-			return result, err
-		}
-		if len(parts) == s.MaxGrowth {
-			result.note("%d runs reached an error of %.3g nat, %.3g wanted: use more live points", len(parts), result.LogEvidenceError, s.EvidenceError)
-			result.judge()
-			return result, nil
-		}
-		ratio := result.LogEvidenceError / s.EvidenceError
-		prior.wanted = int(math.Ceil(min(float64(s.MaxGrowth), cautious*float64(len(parts))*ratio*ratio)))
-		prior.wanted = max(prior.wanted, len(parts)+1)
-		prior.logZ, prior.variance = result.LogEvidence, result.LogEvidenceError*result.LogEvidenceError
-		prior.known = len(parts)
 	}
 }
 
-// cautious scales the estimate of how many runs are needed, which is uncertain
-// by a few percent; a last run is added if they turn out too few.
-const cautious = 0.95
-
-// conclude merges the runs there are when the wanted error was not reached.
-func conclude(parts []*Outcome, s Settings, status Status) (*Outcome, error) {
-	result, err := merge(parts, s.Workers)
-	if err != nil || status == CallLimit && result.LogEvidenceError <= s.EvidenceError {
-		return result, err
+// begin returns the runner to go on with: the one under way, or the next
+// addition, or nil if whole is the outcome.
+func (g *growing) begin() (*runner, error) {
+	if g.current != nil {
+		return g.current, nil
 	}
-	result.Status = status
-	if status == Interrupted {
-		result.Partial = true
-		result.note("interrupted at an error of %.3g nat, %.3g wanted", result.LogEvidenceError, s.EvidenceError)
+	if len(g.parts) == 0 {
+		g.current = newRunner(g, nil)
+		return g.current, nil
+	}
+	if len(g.left) == 0 {
+		if done, err := g.plan(len(g.parts)); done || err != nil {
+			return nil, err
+		}
+	}
+	g.current = newRunner(g, g.left[0])
+	g.left = g.left[1:]
+	return g.current, nil
+}
+
+// plan merges the first n parts and plans what to add to them. It reports true
+// if nothing is to be added.
+func (g *growing) plan(n int) (bool, error) {
+	whole, err := merge(g.parts[:n], g.set.Workers)
+	if err != nil {
+		return false, err
+	}
+	limited := g.limited
+	g.whole, g.merged = whole, n
+	s := g.set
+	switch {
+	case whole.Status != Converged || s.reached(whole):
+		return true, nil
+	case s.MaxCalls != 0 && whole.Calls >= s.MaxCalls:
+		whole.Status = CallLimit
+		g.missed("the limit of %d calls was reached", s.MaxCalls)
+		return true, nil
+	case limited:
+		g.missed("%d times the live points were reached: use more of them", s.MaxGrowth)
+		return true, nil
+	}
+	g.left, g.limited = s.additions(whole)
+	g.gauge.plan(whole, g.left)
+	if len(g.left) == 0 {
+		g.missed("%d times the live points were reached: use more of them", s.MaxGrowth)
+		return true, nil
+	}
+	return false, nil
+}
+
+// missed notes why the whole is short of its targets.
+func (g *growing) missed(format string, args ...any) {
+	why := fmt.Sprintf(format, args...)
+	if e := g.set.EvidenceError; e > 0 && g.whole.LogEvidenceError > e {
+		g.whole.note("%s at an error of %.3g nat, %.3g wanted", why, g.whole.LogEvidenceError, e)
+	}
+	if e := g.set.PosteriorSamples; g.whole.EffectiveSamples < e {
+		g.whole.note("%s at %.0f effective posterior samples, %.0f wanted", why, g.whole.EffectiveSamples, e)
+	}
+	g.whole.judge()
+}
+
+// limit ends the runner under way at the limit of calls.
+func (g *growing) limit() {
+	r, most := g.current, g.set.MaxCalls
+	if most == 0 || r.ending || !r.begun || r.before+r.out.Calls < most {
+		return
+	}
+	if r.path == nil {
+		if left := r.remaining(); left >= g.set.Remaining {
+			r.out.Status, r.out.Partial = CallLimit, true
+			r.out.note("the limit of %d calls was reached with ln(1 + Z'/Z) = %.3g nat remaining, %.3g wanted", most, left, g.set.Remaining)
+		}
+	}
+	r.ending = true
+}
+
+// interrupted concludes with what there is.
+func (g *growing) interrupted(err error) (*Outcome, error) {
+	g.crew.stop()
+	g.save()
+	r := g.current
+	if !r.begun {
+		if len(g.parts) == 0 {
+			return nil, err
+		}
 	} else {
-		result.note("the limit of %d calls was reached at an error of %.3g nat, %.3g wanted", s.MaxCalls, result.LogEvidenceError, s.EvidenceError)
+		left := r.remaining()
+		base := r.path == nil
+		if base {
+			r.out.note("interrupted with ln(1 + Z'/Z) = %.3g nat remaining, %.3g wanted", left, g.set.Remaining)
+		}
+		if part := r.finish(); len(part.Points) > 0 {
+			g.parts = append(g.parts, part)
+		}
 	}
-	result.judge()
-	return result, nil
+	whole, err := merge(g.parts, g.set.Workers)
+	if err != nil {
+		return nil, err
+	}
+	g.whole = whole
+	whole.Status, whole.Partial = Interrupted, true
+	if r.path != nil {
+		g.missed("interrupted")
+	}
+	whole.judge()
+	return whole, nil
 }
 
-// ledger is what earlier runs leave for the next, and for its progress.
-type ledger struct {
-	runs, wanted   int
-	calls          int64
-	fraction       float64
-	known          int // runs that the following two come from
-	logZ, variance float64
+// calls of the parts that are over.
+func (g *growing) calls() int64 {
+	var n int64
+	for _, p := range g.parts {
+		n += p.Calls
+	}
+	return n
 }

@@ -151,8 +151,8 @@ func TestEvidenceErrorIsReached(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if o.LogEvidenceError > s.EvidenceError || o.Runs < 2 || o.LivePoints != o.Runs*s.LivePoints {
-		t.Errorf("error %g of %d runs with %d live points", o.LogEvidenceError, o.Runs, o.LivePoints)
+	if o.LogEvidenceError > s.EvidenceError || o.LivePoints <= s.LivePoints {
+		t.Errorf("error %g with %d live points", o.LogEvidenceError, o.LivePoints)
 	}
 	if z := (o.LogEvidence - p.want) / o.LogEvidenceError; math.Abs(z) > 4 {
 		t.Errorf("z = %g", z)
@@ -162,8 +162,9 @@ func TestEvidenceErrorIsReached(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if o.Runs != 2 || len(o.Warnings) != 1 || !strings.Contains(o.Warnings[0], "more live points") {
-		t.Errorf("%d runs, warnings %q, want 2 and one that asks for more live points", o.Runs, o.Warnings)
+	// The live number is a mean over a batch, a little below LivePoints.
+	if o.LivePoints < 2*s.LivePoints || o.LivePoints > 21*s.LivePoints/10 || len(o.Warnings) != 1 || !strings.Contains(o.Warnings[0], "use more of them") {
+		t.Errorf("%d live points, warnings %q, want %d and one that asks for more", o.LivePoints, o.Warnings, 2*s.LivePoints)
 	}
 }
 

@@ -14,42 +14,13 @@ import (
 //
 // Points that are removed together are replaced together, above the highest of
 // them: between its own likelihood and that threshold such a strand has no live
-// point. Birth keeps this exactly. At every dead point i
+// point. A strand may also begin above a likelihood, and end before the run
+// does. Birth keeps all this exactly. At every dead point i
 //
 //	LiveCount[i] = (number of points with Birth < LogLikelihood[i]) - i
 //
 // which holds on plateaus too, since nothing is drawn until all of a plateau is
 // gone. The cost is 12 bytes per point.
-
-// beginStrands gives each of the first live points a strand.
-func (r *runner) beginStrands() {
-	if r.strands > 0 {
-		return
-	}
-	for range r.l {
-		r.birth = append(r.birth, math.Inf(-1))
-		r.strand = append(r.strand, r.strands)
-		r.strands++
-	}
-}
-
-// buryStrands moves what is known of the k lowest live points to the dead ones.
-func (r *runner) buryStrands(k int) {
-	r.out.Birth = append(r.out.Birth, r.birth[:k]...)
-	r.out.Strand = append(r.out.Strand, r.strand[:k]...)
-	r.freed = append(r.freed[:0], r.strand[:k]...)
-	r.birth = append(r.birth[:0], r.birth[k:]...)
-	r.strand = append(r.strand[:0], r.strand[k:]...)
-}
-
-// strandOf returns the strand of a fresh point: that of a point just removed, or
-// a new one while the live points are being made up to their number.
-func (r *runner) strandOf(slot int) int32 {
-	if slot < len(r.freed) {
-		return r.freed[slot]
-	}
-	return r.strands + int32(slot-len(r.freed))
-}
 
 // strandJoin carries the strands of several outcomes into their merger.
 type strandJoin struct {

@@ -27,7 +27,7 @@ func strandRuns(t *testing.T) map[string]*Outcome {
 		s Settings
 	}{
 		"gaussian":     {gaussian(3, 0.5), Settings{LivePoints: 100}},
-		"merged":       {twoModes(3, 0.03), Settings{LivePoints: 100, EvidenceError: 0.15}},
+		"grown":        {twoModes(3, 0.03), Settings{LivePoints: 100, EvidenceError: 0.15}},
 		"half plateau": {plateau(), Settings{LivePoints: 100}},
 		"steps":        {steps(), Settings{LivePoints: 100}},
 		"mostly zero":  {hollow(), Settings{LivePoints: 100}},
@@ -48,7 +48,7 @@ func strandRuns(t *testing.T) map[string]*Outcome {
 func TestStrandsMakeUpTheRun(t *testing.T) {
 	for name, o := range strandRuns(t) {
 		strands := o.Strands()
-		if len(strands) != o.LivePoints {
+		if grown := name == "grown"; len(strands) < o.LivePoints || !grown && len(strands) > o.LivePoints {
 			t.Errorf("%s: %d strands of %d live points", name, len(strands), o.LivePoints)
 		}
 		late := 0
@@ -68,7 +68,7 @@ func TestStrandsMakeUpTheRun(t *testing.T) {
 				pool = append(pool, interval{o.Birth[i], o.LogLikelihood[i]})
 			}
 		}
-		if (name == "late strands") != (late > 0) {
+		if name != "grown" && (name == "late strands") != (late > 0) {
 			t.Errorf("%s: %d strands begin late", name, late)
 		}
 		// Points that die together are told apart by nothing but their order.
