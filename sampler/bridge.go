@@ -8,19 +8,13 @@ import (
 	"knell/internal/random"
 )
 
-const (
-	// routeHistories is the number of simulated histories of an error, which it
-	// gives to 1/sqrt(400) = 5 %.
-	routeHistories = 200
-
-	// fewEffective is the effective number below which an estimate and its error
-	// are in doubt (common practice, no source).
-	fewEffective = 50
-)
+// fewEffective is the effective number below which an estimate and its error
+// are in doubt (common practice, no source).
+const fewEffective = 50
 
 // Bridge computes the evidence by bridge sampling from the posterior points of
-// a finished run: every second point fits a normalised density q on the cube,
-// the others and s.Draws draws from q give Z as the root of
+// a finished run: half of its strands fit a normalised density q on the cube,
+// the points of the others and s.Draws draws from q give Z as the root of
 //
 //	mean over draws of L/(a L + b Z q) = mean over posterior of q/(a L + b Z q),
 //
@@ -29,26 +23,30 @@ const (
 // the effective size of the weighted half, (sum w)²/sum w². A wrong N₁ costs
 // efficiency and nothing else.
 //
-// The error is the spread of the root over 200 histories of simulated shrinkage,
-// which move the posterior's weights (see histories), each with Bayesian
-// bootstrap weights of the draws. It holds both the uncertain volumes of the
-// run and the finite number of points and draws. It does not hold correlation
-// between points, which slices may leave. Nor does it hold that the run's
-// uncertain volumes move both halves alike, so that q follows a posterior that is
-// off in the same way: that lowers ln Z by the order of the squared relative
-// error of the weights, which falls as 1 over the live points and is not helped
-// by more draws. TestRoutesAreCalibrated -long shows it in 10 dimensions.
+// The halves are runs of their own, each with the live numbers of its own strands
+// (see bridgeHalves), so that q does not follow the posterior it is compared
+// with in what either has by chance.
+//
+// The error is the spread of the root over replicas of the second half, its
+// strands drawn anew, each with Bayesian bootstrap weights of the draws. It holds
+// the uncertain volumes and the finite number of points and draws. Where the
+// strands are not known the halves are every second point and the replicas
+// histories of simulated shrinkage (see histories).
 //
 // It costs s.Draws likelihood calls. A cancelled ctx gives its error, a
 // likelihood that cannot be used a *PointError, a bad setting a *SettingError.
 // Equal settings give equal bits, whatever the number of workers.
 func (o *Outcome) Bridge(ctx context.Context, newTarget func() (Target, error), s RouteSettings) (Estimate, error) {
 	e := Estimate{Route: "bridge"}
-	r, err := o.newRoute(newTarget, s, 0, 2)
+	r, err := o.newRoute(newTarget, s)
 	if err != nil {
 		return e, err
 	}
 	s = r.RouteSettings
+	halves := o.bridgeHalves(s.Seed)
+	if err := r.fit(halves.fitted); err != nil {
+		return e, err
+	}
 	e.Components = len(r.q.components)
 	d, err := r.draw(ctx, "bridge draw", s.Draws, 0)
 	if err != nil {
@@ -56,11 +54,11 @@ func (o *Outcome) Bridge(ctx context.Context, newTarget func() (Target, error), 
 	}
 	e.Calls = int64(s.Draws)
 
-	half := o.posterior(1, 2)
+	half := halves.compared
 	b := bridge{a: half.effective / (half.effective + float64(s.Draws))}
 	y := make([]float64, o.dim())
-	for i, u := range half.points {
-		b.posterior = append(b.posterior, o.LogLikelihood[2*i+1]-r.q.logDensity(u, y))
+	for k, i := range halves.index {
+		b.posterior = append(b.posterior, o.LogLikelihood[i]-r.q.logDensity(half.points[k], y))
 	}
 	even := make([]float64, s.Draws)
 	for i := range even {
@@ -74,10 +72,10 @@ func (o *Outcome) Bridge(ctx context.Context, newTarget func() (Target, error), 
 	}
 	e.LogEvidence = b.solve(half.weight, even, o.LogEvidence)
 
-	// One Newton step from the root for each history: the terms do not change.
+	// One Newton step from the root for each replica: the terms do not change.
 	left, right, slope := b.terms(e.LogEvidence)
-	step := make([]float64, routeHistories)
-	o.histories(s.Seed, routeHistories, s.Workers, func(h int, weight []float64) {
+	step := make([]float64, halves.replicas.count)
+	halves.replicas.each(s.Workers, func(h int, weight []float64) {
 		rng := random.New(s.Seed, "bridge bootstrap", uint64(h))
 		var sum, num, fall float64
 		for i, t := range left {
@@ -88,15 +86,15 @@ func (o *Outcome) Bridge(ctx context.Context, newTarget func() (Target, error), 
 		}
 		num, fall = num/sum, fall/sum
 		var all, den, rise float64
-		for i, t := range right {
-			w := weight[2*i+1]
+		for k, t := range right {
+			w := weight[halves.index[k]]
 			all += w
 			den += w * t
-			rise += w * slope[len(left)+i]
+			rise += w * slope[len(left)+k]
 		}
 		step[h] = (num - den/all) / (fall + rise/all)
 	})
-	_, e.Error = meanSD(step)
+	e.Error = halves.replicas.spread(step)
 	o.doubts(&e)
 	return e, nil
 }

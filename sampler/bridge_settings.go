@@ -106,9 +106,8 @@ type route struct {
 	q    *mixture
 }
 
-// newRoute checks the settings, makes the targets and fits the density to the
-// posterior points in s.
-func (o *Outcome) newRoute(newTarget func() (Target, error), settings RouteSettings, first, step int) (*route, error) {
+// newRoute checks the settings and makes the targets.
+func (o *Outcome) newRoute(newTarget func() (Target, error), settings RouteSettings) (*route, error) {
 	if len(o.Points) == 0 || len(o.LogWeight) != len(o.Points) {
 		return nil, fmt.Errorf("sampler: a further route to the evidence from an outcome of %d points with %d weights, want a finished run", len(o.Points), len(o.LogWeight))
 	}
@@ -124,11 +123,14 @@ func (o *Outcome) newRoute(newTarget func() (Target, error), settings RouteSetti
 		return nil, fmt.Errorf("sampler: target of %d dimensions, want %d as the outcome", d, o.dim())
 	}
 	r := &route{RouteSettings: settings}
-	if r.pool, err = newPool(newTarget, target, settings.Workers); err != nil {
-		return nil, err
-	}
-	r.q, err = fitMixture(o.posterior(first, step), settings.Periodic, settings.Components, settings.Seed)
+	r.pool, err = newPool(newTarget, target, settings.Workers)
 	return r, err
+}
+
+// fit fits the density to posterior points.
+func (r *route) fit(s sample) (err error) {
+	r.q, err = fitMixture(s, r.Periodic, r.Components, r.Seed)
+	return err
 }
 
 // draws is the likelihood and the mixture's density at draws.

@@ -61,24 +61,31 @@ var routes = []struct {
 	{"importance", (*Outcome).Importance},
 }
 
-// routeProblems with the number of seeds of every go test.
-func routeProblems() []*problem {
-	ps := []*problem{
-		flat(3), gaussian(2, 0.95), gaussian(5, 0.95), gaussian(10, 0.95), twoModes(2, 0.015),
-		wallCut(), ridge(), heavyTail(2), hollow(),
+// routeProblem is a problem and the way of drawing its run is held to, 0 for none.
+type routeProblem struct {
+	*problem
+	force method
+}
+
+// routeProblems are those of every go test; slices draw from the points there are,
+// so that points have common starts.
+func routeProblems() []routeProblem {
+	ps := []routeProblem{
+		{flat(3), 0}, {gaussian(2, 0.95), 0}, {gaussian(5, 0.95), 0}, {gaussian(10, 0.95), 0}, {twoModes(2, 0.015), 0},
+		{wallCut(), 0}, {ridge(), 0}, {heavyTail(2), 0}, {hollow(), 0},
+		{gaussian(2, 0.95), fromSlices}, {wallCut(), fromSlices},
 	}
 	for _, p := range ps {
 		p.live = 150
-		if p.dim == 10 {
-			p.live = 200
+		if p.force == fromSlices {
+			p.name += " by slices"
 		}
 	}
 	return ps
 }
 
 // TestRoutesAreCalibrated: over seeds, (ln Z - truth)/error of either route must
-// look like a unit normal. The gaussian in 10 dimensions has more live points for
-// the reason Bridge states.
+// look like a unit normal.
 func TestRoutesAreCalibrated(t *testing.T) {
 	n, sigmas := 8, 3.0
 	if *long {
@@ -92,7 +99,7 @@ func TestRoutesAreCalibrated(t *testing.T) {
 		var size, components, warned, apart [2]float64
 		for seed := range n {
 			key := random.New(uint64(seed), "routes "+p.name, uint64(p.dim)).Uint64()
-			o, err := Run(context.Background(), p.target, Settings{Seed: key, LivePoints: p.live, Periodic: p.periodic})
+			o, err := Run(context.Background(), p.target, Settings{Seed: key, LivePoints: p.live, Periodic: p.periodic, force: p.force})
 			if err != nil {
 				t.Fatal(err)
 			}
@@ -114,14 +121,16 @@ func TestRoutesAreCalibrated(t *testing.T) {
 		}
 		for i, route := range routes {
 			mean, sd := meanSD(y[i].z)
-			t.Logf("%-14s %2d %-10s %d seeds: pull %+.2f ± %.2f, sd %.2f, error %.4f, effective %4.0f, components %.1f, warnings %.0f, apart from the run %.0f",
+			t.Logf("%-18s %2d %-10s %d seeds: pull %+.2f ± %.2f, sd %.2f, error %.4f, effective %4.0f, components %.1f, warnings %.0f, apart from the run %.0f",
 				p.name, p.dim, route.name, n, mean, 1/math.Sqrt(float64(n)), sd, y[i].err, size[i], components[i], warned[i], apart[i])
 			y[i].check(t, &problem{name: p.name + ", " + route.name, dim: p.dim}, sigmas)
 			if y[i].err > 0.03 {
 				t.Errorf("%s/%d, %s: mean error %.3f nat, want less than 0.03", p.name, p.dim, route.name, y[i].err)
 			}
-			if warned[i] > 0 {
-				t.Errorf("%s/%d, %s: %.0f warnings, want none", p.name, p.dim, route.name, warned[i])
+			// A density that falls short of the posterior somewhere is right to be warned
+			// of, and rare.
+			if warned[i] > 1+0.02*float64(n) {
+				t.Errorf("%s/%d, %s: %.0f warnings in %d runs", p.name, p.dim, route.name, warned[i], n)
 			}
 			// 0.3 % of right runs are beyond 3 errors.
 			if apart[i] > 1+0.02*float64(n) {

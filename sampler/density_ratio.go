@@ -24,7 +24,7 @@ const (
 
 // RatioSettings of SavageDickey. The zero value of every field means its default.
 type RatioSettings struct {
-	Seed uint64 // keys the simulated histories
+	Seed uint64 // keys the simulated histories of an outcome without strands
 
 	// Window is the share of the posterior that the density's window takes in,
 	// above 0 and up to 0.9, default 0.5.
@@ -66,8 +66,9 @@ type Ratio struct {
 // holds the share s.Window of the posterior (nearest neighbours, as the window
 // must adapt to tails); h is at most ½ in a periodic coordinate.
 //
-// The error is the spread over 200 histories of simulated shrinkage (see
-// histories), as that of Bridge. It does not hold the bias of the window; half
+// The error is the spread over replicas of the run, its strands drawn anew, or
+// over histories of simulated shrinkage where the strands are not known. It does
+// not hold the bias of the window; half
 // the window is tried too, and a change beyond 3 of its own errors is a warning,
 // as are few samples near the value.
 //
@@ -93,7 +94,7 @@ func (o *Outcome) SavageDickey(dimension int, at float64, s RatioSettings) (Rati
 	case s.Workers < 0:
 		return r, bad("Workers", s.Workers, "0 (for 1) or more")
 	}
-	all := o.posterior(0, 1)
+	all := o.posterior()
 	offset := make([]float64, len(all.points))
 	for i, u := range all.points {
 		offset[i] = u[dimension] - at
@@ -117,10 +118,11 @@ func (o *Outcome) SavageDickey(dimension int, at float64, s RatioSettings) (Rati
 		return r, fmt.Errorf("sampler: density ratio: the density of coordinate %d at %g has no fit by a quadratic in a window of half-width %.3g with %.0f effective samples", dimension, at, wide.h, r.EffectiveSamples)
 	}
 	half, halfOK := narrow.logDensity(all.weight)
-	spread := make([]float64, routeHistories)
-	change := make([]float64, routeHistories)
-	failed := make([]bool, routeHistories)
-	o.histories(s.Seed, routeHistories, max(1, s.Workers), func(h int, weight []float64) {
+	replicas := o.replicas(s.Seed)
+	spread := make([]float64, replicas.count)
+	change := make([]float64, replicas.count)
+	failed := make([]bool, replicas.count)
+	replicas.each(max(1, s.Workers), func(h int, weight []float64) {
 		value, ok := wide.logDensity(weight)
 		failed[h] = !ok
 		spread[h] = value
@@ -135,17 +137,17 @@ func (o *Outcome) SavageDickey(dimension int, at float64, s RatioSettings) (Rati
 			moved = append(moved, change[h])
 		}
 	}
-	if len(good) < routeHistories/2 {
-		return r, fmt.Errorf("sampler: density ratio: the density of coordinate %d at %g has a fit in %d of %d simulated histories only", dimension, at, len(good), routeHistories)
+	if len(good) < replicas.count/2 {
+		return r, fmt.Errorf("sampler: density ratio: the density of coordinate %d at %g has a fit in %d of %d replicas only", dimension, at, len(good), replicas.count)
 	}
-	_, r.Error = meanSD(good)
-	if lost := routeHistories - len(good); lost > 0 {
-		r.warn("%d of %d simulated histories have no fit: the error may be too small", lost, routeHistories)
+	r.Error = replicas.spread(good)
+	if lost := replicas.count - len(good); lost > 0 {
+		r.warn("%d of %d replicas have no fit: the error may be too small", lost, replicas.count)
 	}
-	if _, sd := meanSD(moved); halfOK && math.Abs(half-r.LogBayesFactor) > 3*sd {
+	if sd := replicas.spread(moved); halfOK && math.Abs(half-r.LogBayesFactor) > 3*sd {
 		r.warn("half the window changes the log Bayes factor by %+.3f nat, %.1f of that change's errors: the density is not a smooth curve at that scale", half-r.LogBayesFactor, math.Abs(half-r.LogBayesFactor)/sd)
 	}
-	if r.Near < fewEffective {
+	if !r.Supported() {
 		r.warn("%.0f effective samples lie near the nested value, want at least %d: the density there is carried over from farther off", r.Near, fewEffective)
 	}
 	if o.Partial {
@@ -153,6 +155,10 @@ func (o *Outcome) SavageDickey(dimension int, at float64, s RatioSettings) (Rati
 	}
 	return r, nil
 }
+
+// Supported reports whether enough effective samples lie near the nested value,
+// 50 of them, to know the density there without carrying it over from farther off.
+func (r Ratio) Supported() bool { return r.Near >= fewEffective }
 
 func (r *Ratio) warn(format string, args ...any) {
 	r.Warnings = append(r.Warnings, fmt.Sprintf(format, args...))

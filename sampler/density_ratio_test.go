@@ -43,6 +43,7 @@ type ratioCase struct {
 	at       float64
 	want     float64
 	periodic bool
+	force    method // the way of drawing, 0 for none
 }
 
 func ratioCases() []ratioCase {
@@ -58,19 +59,21 @@ func ratioCases() []ratioCase {
 		{"at the upper edge, two widths off", 0.8, 1},
 	} {
 		p := nestedPair(c.mean)
-		cases = append(cases, ratioCase{c.name, p, c.at, p.at(c.mean, c.at) - p.want, false})
+		cases = append(cases, ratioCase{c.name, p, c.at, p.at(c.mean, c.at) - p.want, false, 0})
 	}
 	// An exponential of mean 0.1 that ends at the wall: e^(-10u) 10/(1-e^-10).
 	exponential := &problem{dim: 2, live: 150, logL: func(u []float64) float64 {
 		return -10*u[0] - 50*(u[1]-0.5)*(u[1]-0.5)
 	}}
-	cases = append(cases, ratioCase{"exponential at the edge", exponential, 0, math.Log(-10 / math.Expm1(-10)), false})
+	cases = append(cases, ratioCase{"exponential at the edge", exponential, 0, math.Log(-10 / math.Expm1(-10)), false, 0})
 	// exp(4 cos 2πu) over the circle has the mean I₀(4) = 11.30192195213633 (40 digits by series).
 	circle := &problem{dim: 2, live: 150, periodic: []bool{true, false}, logL: func(u []float64) float64 {
 		return 4*math.Cos(2*math.Pi*u[0]) - 50*(u[1]-0.5)*(u[1]-0.5)
 	}}
-	cases = append(cases, ratioCase{"periodic, at the cut", circle, 0, 4 - math.Log(11.30192195213633), true})
-	return append(cases, ratioCase{"flat, at the edge", flat(2), 1, 0, false})
+	cases = append(cases, ratioCase{"periodic, at the cut", circle, 0, 4 - math.Log(11.30192195213633), true, 0})
+	slices := nestedPair(0.4)
+	cases = append(cases, ratioCase{"inside, one width off, by slices", slices, 0.5, slices.at(0.4, 0.5) - slices.want, false, fromSlices})
+	return append(cases, ratioCase{"flat, at the edge", flat(2), 1, 0, false, 0})
 }
 
 // TestSavageDickeyIsCalibrated: over seeds, (estimate - truth)/error must look
@@ -86,7 +89,7 @@ func TestSavageDickeyIsCalibrated(t *testing.T) {
 		warned := 0
 		for seed := range n {
 			key := random.New(uint64(seed), c.name).Uint64()
-			o, err := Run(context.Background(), c.p.target, Settings{Seed: key, LivePoints: c.p.live, Periodic: c.p.periodic})
+			o, err := Run(context.Background(), c.p.target, Settings{Seed: key, LivePoints: c.p.live, Periodic: c.p.periodic, force: c.force})
 			if err != nil {
 				t.Fatal(err)
 			}

@@ -28,8 +28,11 @@ const dominant = 0.05
 // It costs s.Draws likelihood calls; errors and repeatability are those of Bridge.
 func (o *Outcome) Importance(ctx context.Context, newTarget func() (Target, error), s RouteSettings) (Estimate, error) {
 	e := Estimate{Route: "importance"}
-	r, err := o.newRoute(newTarget, s, 0, 1)
+	r, err := o.newRoute(newTarget, s)
 	if err != nil {
+		return e, err
+	}
+	if err := r.fit(o.posterior()); err != nil {
 		return e, err
 	}
 	s = r.RouteSettings

@@ -38,16 +38,13 @@ func newSample(points [][]float64, weight []float64) sample {
 	return s
 }
 
-// posterior returns the points of o whose index i has i mod step = first, with
-// their posterior weights.
-func (o *Outcome) posterior(first, step int) sample {
-	var points [][]float64
-	var weight []float64
-	for i := first; i < len(o.Points); i += step {
-		points = append(points, o.Points[i])
-		weight = append(weight, math.Exp(o.LogWeight[i]))
+// posterior returns all points of o with their posterior weights.
+func (o *Outcome) posterior() sample {
+	weight := make([]float64, len(o.Points))
+	for i, l := range o.LogWeight {
+		weight[i] = math.Exp(l)
 	}
-	return newSample(points, weight)
+	return newSample(o.Points, weight)
 }
 
 // half returns every second point from first on.

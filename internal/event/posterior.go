@@ -26,11 +26,14 @@ func (p *Prepared) summarise(h *hypothesis, o *sampler.Outcome) (report.Hypothes
 		LogEvidenceOver:  report.Number(o.LogEvidence - h.allowed.logMass()),
 		Calls:            o.Calls, LivePoints: o.LivePoints,
 		// The density of the prior that is left is higher by one over its mass.
-		Information:      report.Number(o.Information + h.allowed.logMass()),
-		EffectiveSamples: report.Number(o.EffectiveSamples),
-		InsertionRankP:   report.Number(o.InsertionRankP),
-		Status:           o.Status.String(), Partial: o.Partial,
+		Information:         report.Number(o.Information + h.allowed.logMass()),
+		EffectiveSamples:    report.Number(o.EffectiveSamples),
+		InsertionRankP:      report.Number(o.InsertionRankP),
+		InsertionRankBlockP: report.Number(o.InsertionRankBlockP),
+		Efficiency:          report.Number(o.Efficiency()), Phases: phases(o),
+		Status: o.Status.String(), Partial: o.Partial,
 		BootstrapError: report.Number(math.Hypot(o.BootstrapError, h.allowed.error)),
+		ErrorTension:   report.Number(o.ErrorTension),
 		Verdict:        o.Verdict, Warnings: o.Warnings,
 		MaxLogLikelihood: report.Number(largest),
 	}
@@ -62,12 +65,10 @@ func (p *Prepared) summarise(h *hypothesis, o *sampler.Outcome) (report.Hypothes
 	entry.StablePrior = report.Number(h.allowed.mass)
 	entry.UnstablePosterior = report.Number(unstable)
 	for j, c := range columns {
-		q := weightedQuantiles(weighted[j], weights, 0.05, 0.5, 0.95)
-		entry.Summary = append(entry.Summary, report.ParameterSummary{
-			Parameter: c.Name, Unit: c.Unit,
-			Low90: report.Number(q[0]), Median: report.Number(q[1]), High90: report.Number(q[2]),
-		})
+		entry.Summary = append(entry.Summary, summary(c, weighted[j], weights))
 	}
+	entry.Modes = posteriorModes(h, o, h.model.Parameters(), weighted, weights)
+	entry.DensityRatios = p.densityRatios(h, o)
 
 	_, chosen := o.EqualWeight(p.Config.Seed, 0)
 	posterior := report.Posterior{Name: h.Name, Values: newColumns(len(columns)+2, len(chosen))}

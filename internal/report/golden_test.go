@@ -56,7 +56,18 @@ func someWeighing() *Weighing {
 				Posterior:  "posterior-surface.csv",
 				Dimensions: 7, LivePoints: 1000, Information: 17.25, EffectiveSamples: 5100,
 				InsertionRankP: Number(math.NaN()), Status: "remaining evidence below the limit", MaxLogLikelihood: 130.5,
-				Warnings: []string{"insertion ranks are not uniform (p = 0.0004)"},
+				Phases: []Phase{
+					{Name: "prior", Calls: 3000, Points: 1500, Efficiency: 0.5, Ranks: 500, InsertionRankP: 0.3, InsertionRankBlockP: 0.25},
+					{Name: "ellipsoids", Calls: 2342678, Points: 23000, Efficiency: 0.0098, Ranks: 23000, InsertionRankP: Number(math.NaN()), InsertionRankBlockP: 0.5},
+				}, Efficiency: 0.0104,
+				Modes: []PosteriorMode{
+					{LogEvidenceOver: 108.8, Error: 0.12, Share: 0.8037, ShareError: 0.021, Points: 15000, MaxLogLikelihood: 130.5,
+						Parameters: []ParameterSummary{{"mass", "solar masses", 68.41, 64.35, 73.08}, {"offset", "dex", 3.2, 3.1, 3.3}}},
+					{LogEvidenceOver: 107.39, Error: 0.19, Share: 0.1963, ShareError: 0.021, Points: 9500, MaxLogLikelihood: 127.25,
+						Parameters: []ParameterSummary{{"mass", "solar masses", 69.02, 64.22, 73.91}, {"offset", "dex", 9.4, 8.1, 11.1}}},
+				},
+				DensityRatios: []DensityRatio{{Nested: "horizon", Parameter: "reflectivity", At: 0, Known: true, LogBayesFactor: -9.6, Error: 0.3}},
+				Warnings:      []string{"insertion ranks are not uniform (p = 0.0004)"},
 				Summary: []ParameterSummary{
 					{"mass", "solar masses", 68.41, 64.35, 73.08},
 					{"spin", "", 0.6921, 0.6112, 0.7468},
@@ -66,9 +77,9 @@ func someWeighing() *Weighing {
 			},
 		},
 		Ratios: []Ratio{
-			{"surface", "horizon", 9.8, 0.151},
-			{"horizon", "surface", -9.8, 0.151},
-			{"horizon", "noise", 99.21875, 0.104},
+			{For: "surface", Against: "horizon", LogBayesFactor: 9.8, Error: 0.151},
+			{For: "horizon", Against: "surface", LogBayesFactor: -9.8, Error: 0.151},
+			{For: "horizon", Against: "noise", LogBayesFactor: 99.21875, Error: 0.104},
 		},
 		Sites: []Site{{"H1", "marram-h1.hdf5", "median of 4 s segments", -0.0061, 0.43, -0.31}},
 		Analysis: Analysis{Time: 1400000123.25, Start: 0.003, SampleRate: 2048, Duration: 4,

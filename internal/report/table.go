@@ -19,7 +19,7 @@ func Table(out io.Writer, w *Weighing) error {
 		fmt.Fprint(&text, "PARTIAL: a run ended before it converged; no number below is final\n")
 	}
 	for _, part := range []func(io.Writer, *Weighing) error{
-		writeEvidences, writeRatios, writeParameters, writeCautions,
+		writeEvidences, writeRatios, writeParameters, writeModes, writeCautions,
 	} {
 		if err := part(&text, w); err != nil {
 			return err
@@ -73,12 +73,19 @@ func writeRatios(out io.Writer, w *Weighing) error {
 		unfinished[h.Name] = h.Partial
 	}
 	fmt.Fprint(out, "\nRatios\n")
-	for _, r := range w.Ratios {
+	ratios, _ := w.ratios()
+	for _, r := range ratios {
 		words := odds(r)
 		if unfinished[r.For] || unfinished[r.Against] {
 			words = "not final: a run did not finish"
 		}
 		fmt.Fprintf(out, "  %s over %s: ln B = %s (%s)\n", r.For, r.Against, withError(r.LogBayesFactor, r.Error), words)
+		switch {
+		case r.SavageDickey != nil:
+			fmt.Fprintf(out, "    by the Savage-Dickey ratio at %s: ln B = %s\n", r.SavageDickeyAt, withError(*r.SavageDickey, *r.SavageDickeyError))
+		case r.SavageDickeyAt != "":
+			fmt.Fprintf(out, "    by the Savage-Dickey ratio at %s: not known\n", r.SavageDickeyAt)
+		}
 	}
 	return nil
 }
@@ -148,6 +155,37 @@ func writeParameters(out io.Writer, w *Weighing) error {
 	return nil
 }
 
+// writeModes shows the parts of the posteriors that came apart.
+func writeModes(out io.Writer, w *Weighing) error {
+	for _, h := range w.Hypotheses {
+		if len(h.Modes) < 2 {
+			continue
+		}
+		g := grid{head: []string{"share of posterior", "ln evidence over noise"}, pad: "  "}
+		for _, p := range h.Modes[0].Parameters {
+			g.head = append(g.head, p.Parameter)
+		}
+		for _, m := range h.Modes {
+			row := []string{withError(m.Share, m.ShareError), withError(m.LogEvidenceOver, m.Error)}
+			for _, p := range m.Parameters {
+				row = append(row, median(p))
+			}
+			g.rows = append(g.rows, row)
+		}
+		fmt.Fprintf(out, "\nModes of %s: medians within each\n", h.Name)
+		if err := g.write(out); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// median shows a median to a hundredth of the interval's width.
+func median(s ParameterSummary) string {
+	text, _, _ := strings.Cut(interval(s), " ")
+	return text
+}
+
 // interval shows a median and its interval to a hundredth of the interval's width.
 func interval(s ParameterSummary) string {
 	if math.IsInf(float64(s.High90), 1) {
@@ -184,7 +222,13 @@ func writeCautions(out io.Writer, w *Weighing) error {
 			run = append(run, h.Name+": "+warning)
 		}
 	}
-	run = append(run, w.Cautions...)
+	ratios, cautions := w.ratios()
+	for _, r := range ratios {
+		if r.SavageDickeyNote != "" {
+			run = append(run, fmt.Sprintf("Savage-Dickey ratio of %s over %s at %s: %s", r.For, r.Against, r.SavageDickeyAt, r.SavageDickeyNote))
+		}
+	}
+	run = append(run, cautions...)
 	if len(run) > 0 {
 		fmt.Fprint(out, "\nDoubts about this run\n")
 		for _, line := range run {

@@ -69,7 +69,7 @@ func TestOdds(t *testing.T) {
 		{Number(math.NaN()), 0.1, "not known"},
 		{Number(math.Inf(1)), 0.1, "not known"},
 	} {
-		if got := odds(Ratio{"surface", "horizon", tc.b, tc.e}); got != tc.want {
+		if got := odds(Ratio{For: "surface", Against: "horizon", LogBayesFactor: tc.b, Error: tc.e}); got != tc.want {
 			t.Errorf("odds(%g ± %g) = %q, want %q", tc.b, tc.e, got, tc.want)
 		}
 	}

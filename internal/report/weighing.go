@@ -55,9 +55,24 @@ type Hypothesis struct {
 	Warnings         []string `json:"warnings"`
 	// Routes are further ways to the same evidence; none for a partial run.
 	Routes []Route `json:"routes"`
+	// Phases are the run's ways of drawing, with what each cost.
+	Phases     []Phase `json:"phases"`
+	Efficiency Number  `json:"efficiency"` // points drawn per likelihood call, 1 for an ideal sampler
+	// InsertionRankBlockP is the insertion-rank test of the worst stretch of the
+	// run, corrected for their number.
+	InsertionRankBlockP Number `json:"insertion_rank_block_p"`
+	// Modes are the parts that the posterior came apart into, those of more evidence
+	// first; none where it is in one piece.
+	Modes []PosteriorMode `json:"modes"`
+	// DensityRatios are the Bayes factors of hypotheses nested in this one; the
+	// document has them among the ratios.
+	DensityRatios []DensityRatio `json:"-"`
 	// BootstrapError is the error of the log-evidence found by drawing strands of
 	// the run anew, beside log_evidence_error, which simulates its shrinkages.
 	BootstrapError Number `json:"bootstrap_error"`
+	// ErrorTension is the logarithm of bootstrap_error over log_evidence_error, in its
+	// own standard errors.
+	ErrorTension Number `json:"error_tension"`
 	// StablePrior is the share of the prior that the switch "stable" left, 1
 	// without it; the evidence is that of the prior normalised over this share.
 	StablePrior Number `json:"stable_prior"`
@@ -76,6 +91,29 @@ type Route struct {
 	Calls            int64  `json:"calls"`
 }
 
+// Phase is one way in which the run drew points.
+type Phase struct {
+	Name       string `json:"name"`   // prior, ellipsoids or slices
+	Calls      int64  `json:"calls"`  // likelihood calls
+	Points     int64  `json:"points"` // points they gave
+	Efficiency Number `json:"efficiency"`
+	// The insertion-rank tests of its points alone, of so many ranks.
+	Ranks               int64  `json:"ranks"`
+	InsertionRankP      Number `json:"insertion_rank_p"`
+	InsertionRankBlockP Number `json:"insertion_rank_block_p"`
+}
+
+// PosteriorMode is a part of a posterior that is separate from the rest.
+type PosteriorMode struct {
+	LogEvidenceOver  Number             `json:"log_evidence_over_noise"` // of its region alone
+	Error            Number             `json:"error"`
+	Share            Number             `json:"share"` // of the posterior
+	ShareError       Number             `json:"share_error"`
+	Points           int                `json:"points"`
+	MaxLogLikelihood Number             `json:"max_log_likelihood_over_noise"`
+	Parameters       []ParameterSummary `json:"parameters"` // the free ones, within the mode
+}
+
 // ParameterSummary is the median of one posterior column and the ends of its
 // central 90 % interval, in the unit.
 type ParameterSummary struct {
@@ -84,14 +122,6 @@ type ParameterSummary struct {
 	Median    Number `json:"median"`
 	Low90     Number `json:"low90"`
 	High90    Number `json:"high90"`
-}
-
-// Ratio is the Bayes factor of one hypothesis over another.
-type Ratio struct {
-	For            string `json:"for"`
-	Against        string `json:"against"`
-	LogBayesFactor Number `json:"log_bayes_factor"`
-	Error          Number `json:"error"`
 }
 
 // Site is what the run used of one site.
@@ -136,12 +166,15 @@ func (w *Weighing) WriteJSON(out io.Writer) error {
 	for i, h := range w.Hypotheses {
 		h.Warnings = notNil(h.Warnings)
 		h.Routes = notNil(h.Routes)
+		h.Phases = notNil(h.Phases)
+		h.Modes = notNil(h.Modes)
 		h.Summary = notNil(h.Summary)
 		document.Hypotheses[i] = h
 	}
-	document.Ratios = notNil(w.Ratios)
+	ratios, cautions := w.ratios()
+	document.Ratios = notNil(ratios)
 	document.Sites = notNil(w.Sites)
-	document.Cautions = notNil(w.Cautions)
+	document.Cautions = notNil(cautions)
 	return writeJSON(out, document)
 }
 
