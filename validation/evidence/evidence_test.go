@@ -179,7 +179,10 @@ func TestRowsPrintAsTheyComplete(t *testing.T) {
 	out := &cancelling{text: "gaussian    2     4   -1.3863", cancel: cancel}
 	status := run(ctx, strings.Fields("--problems gaussian --dims 2,16 --seeds 4 --live 100 --workers 2"), out, io.Discard)
 	if status != interrupted || !strings.Contains(out.seen.String(), "INTERRUPTED") {
-		t.Errorf("status %d, want %d: the row of 2 dimensions came after the runs in 16\n%s", status, interrupted, out.seen.String())
+		t.Errorf("status %d, want %d\n%s", status, interrupted, out.seen.String())
+	}
+	if !strings.Contains(out.seen.String(), "gaussian   16     0  -11.0904") {
+		t.Errorf("the row of 2 dimensions came after runs in 16:\n%s", out.seen.String())
 	}
 }
 

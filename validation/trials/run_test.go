@@ -27,6 +27,9 @@ func TestRunTellsCasesInOrder(t *testing.T) {
 			if at == 1 && run == 1 {
 				once.Do(func() { close(hold) })
 			}
+			if workers == 1 && at == 1 && !slices.Equal(told, []int{0}) {
+				t.Errorf("told %v before the second case, want 0", told)
+			}
 			tell(0.5)
 			return 10*at + run, true
 		}, func(at int, runs []int) {
