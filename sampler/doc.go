@@ -1,27 +1,34 @@
 // Package sampler computes evidences of log-likelihoods on the unit cube by
-// static nested sampling (Bayesian Anal. 1, 833 (2006)), with weighted points
-// of the posterior and a verdict on how far the numbers can be trusted.
+// nested sampling (Bayesian Anal. 1, 833 (2006)), with weighted points of the
+// posterior and a verdict on how far the numbers can be trusted.
 //
 // The road of one run:
 //
-//  1. Run checks the Settings and makes one Target per worker.
-//  2. begin draws the first live points from the prior. Where the likelihood is
-//     zero it draws on; how often it was zero is the first shrinkage.
-//  3. batch takes the n/16 lowest live points (and all that tie with the last of
-//     them) away, each counted with its own live number n, n-1, ..., and
-//     prepare chooses how to draw their replacements: from the whole cube, from a
-//     union of ellipsoids (bound.go, cluster.go, ellipsoid.go, frame.go) or by
-//     slices (slice.go, memory.go), whichever is expected to take fewest calls.
-//  4. The workers of pool.go draw the replacements (draw.go). Each has a random
-//     stream of its own, keyed by run, batch and slot, and sees only the state
-//     at the start of the batch: the bits do not depend on the workers.
-//  5. rank.go notes where the new points enter among the old: were the draws
-//     fair, these ranks are uniform.
-//  6. When little evidence remains, the live points are removed in turn, and
-//     evidence.go simulates the shrinkage of the volume: log-evidence, its
-//     error, the information and the weights are averages over 500 histories.
-//  7. While the error is above the wanted one, Run adds a run and merge.go joins
-//     them. The Outcome (outcome.go) is judged last.
+//  1. Run checks the Settings, makes one Target per worker, and goes back to the
+//     state that the Keeper has, if any (keeper.go, keeping.go, snapshot.go).
+//  2. begin draws the first live points from the prior (prior.go). Where the
+//     likelihood is zero it draws on; how often it was zero is the first shrinkage.
+//  3. next takes the n/32 lowest live points (and all that tie with the last of
+//     them) away and sends a flight of replacements (batch.go, flight.go). prepare
+//     chooses how to draw them: from the whole cube, from a union of ellipsoids
+//     (bound.go, cluster.go, ellipsoid.go, frame.go) or by slices (slice.go,
+//     memory.go), whichever is expected to take fewest calls.
+//  4. The crew draws the slots of up to four flights, oldest first (crew.go,
+//     draw.go). Each slot has a random stream of its own, keyed by part, batch and
+//     slot, and sees only the state when its flight was sent; flights are taken in
+//     by their order. So the bits do not depend on the workers, and a slow call
+//     holds up nobody until four flights wait for it.
+//  5. land takes a flight in; rank.go notes where its points enter among those
+//     they were drawn with: were the draws fair, these ranks are uniform. A
+//     point that lands below the threshold reached meanwhile is dead at once.
+//  6. When little evidence remains, the live points are removed in turn, and the
+//     live number at every dead point follows from where the points were born
+//     (strands.go). evidence.go simulates the shrinkage of the volume: log-evidence,
+//     its error, the information and the weights are averages over 500 histories.
+//  7. While a target is missed, growth.go plans by which live numbers it would be
+//     reached at least cost, and additions follow the levels of the likelihood
+//     found so far with strands of their own (path.go, ranges.go). merge.go joins
+//     them: the same code joins whole runs. The Outcome (outcome.go) is judged last.
 //
 // What is done with a finished Outcome:
 //

@@ -1,6 +1,9 @@
 package sampler
 
-import "math"
+import (
+	"math"
+	"slices"
+)
 
 const (
 	// growthStep is the compression, in nats, from one level of an addition to
@@ -27,36 +30,32 @@ func (s Settings) reached(o *Outcome) bool {
 // one runner after another, at most chunk strands each. limited says that
 // MaxGrowth does not let them.
 //
-// The variance of ln Z is ∫ G²/n d(-ln X) with G the posterior probability above
-// and n the live number, and the points cost ∫ n d(-ln X): at least cost n is
-// proportional to G. The effective number of samples is 1/∫ P²/n d(-ln X) with P
-// the posterior density in ln X, and at least cost n is proportional to P. The
-// live number wanted is the larger of what there is and these two, each scaled
-// until its target holds. (arXiv:1704.03459 has the importance of a likelihood
-// for either.)
+// With n the live number, P the posterior density in ln X and G the probability
+// above X, the variance of ln Z is ∫ (G-P)²/n d(-ln X) and the effective number of
+// samples is 1/∫ P²/n d(-ln X); the points cost ∫ n d(-ln X). So n is best
+// proportional to |G-P| for the evidence and to P for the posterior. The live
+// number wanted is the largest of what there is and these two, each scaled until
+// its target holds.
 func (s Settings) additions(o *Outcome) (paths []*path, limited bool) {
 	g := o.ranges(growthStep)
 	n := len(g.level)
-	want := append([]float64(nil), g.live...)
+	want := slices.Clone(g.live)
 	most := float64(s.MaxGrowth * s.LivePoints)
-	// raise lifts want to scale times shape until total(want) is below goal.
-	raise := func(shape []float64, value []float64, now, goal float64) {
-		var sum, top float64
-		for j, v := range value {
-			sum += v * g.live[j] / want[j]
-			top = max(top, shape[j])
-		}
-		if now*sum/sum0(value) <= goal || top == 0 {
-			return
-		}
-		base := append([]float64(nil), want...)
+	// raise lifts want to a multiple of shape until the sum of value, which is now
+	// with the live numbers there are, falls to goal.
+	raise := func(shape, value []float64, now, goal float64) {
+		base, all := slices.Clone(want), sum(value)
 		predicted := func(scale float64) float64 {
-			var sum float64
+			var left float64
 			for j := range want {
 				want[j] = max(base[j], min(scale*shape[j], most))
-				sum += value[j] * g.live[j] / want[j]
+				left += value[j] * g.live[j] / want[j]
 			}
-			return now * sum / sum0(value)
+			return now * left / all
+		}
+		top := slices.Max(shape)
+		if top == 0 || predicted(0) <= goal {
+			return
 		}
 		lo, hi := 0.0, most/top
 		if predicted(hi) > goal {
@@ -74,7 +73,7 @@ func (s Settings) additions(o *Outcome) (paths []*path, limited bool) {
 		predicted(hi)
 	}
 	if e := s.EvidenceError; e > 0 && o.LogEvidenceError > e {
-		raise(g.above, g.variance, o.LogEvidenceError*o.LogEvidenceError, e*e*(1-beyond))
+		raise(g.leverage(), g.variance, o.LogEvidenceError*o.LogEvidenceError, e*e*(1-beyond))
 	}
 	if e := s.PosteriorSamples; e > 0 && o.EffectiveSamples < e {
 		raise(g.density(), g.squares, 1/o.EffectiveSamples, (1-beyond)/e)
@@ -134,6 +133,15 @@ func (s Settings) path(g *ranges, more []int, done, chunk int) *path {
 	return p
 }
 
+// leverage is |G-P|, see additions.
+func (g *ranges) leverage() []float64 {
+	d := g.density()
+	for j := range d {
+		d[j] = math.Abs(g.above[j] - d[j])
+	}
+	return d
+}
+
 // density is the posterior density in ln X, smoothed.
 func (g *ranges) density() []float64 {
 	d := make([]float64, len(g.mass))
@@ -148,10 +156,10 @@ func (g *ranges) density() []float64 {
 	return d
 }
 
-func sum0(v []float64) float64 {
-	var s float64
+func sum(v []float64) float64 {
+	var total float64
 	for _, x := range v {
-		s += x
+		total += x
 	}
-	return s
+	return total
 }

@@ -16,8 +16,10 @@ type ranges struct {
 	mass  []float64 // posterior probability of each range
 	above []float64 // and that of all from the middle of the range on
 
-	// Sums over the points of the range: of the squared weights, and of the
-	// squared shares in the variance of ln Z. Both fall as 1/live.
+	// Sums over the points of the range: of the squared weights p, and of the
+	// squares of G/n - p, which make up the variance of ln Z: the removal of a
+	// point of live number n scales the volume above it, with the probability G
+	// there, and takes its own edge along. Both fall as 1/live.
 	squares, variance []float64
 }
 
@@ -47,7 +49,7 @@ func (o *Outcome) ranges(step float64) *ranges {
 		p := math.Exp(o.LogWeight[i])
 		n := float64(o.LiveCount[i])
 		above = max(0, above-p)
-		share := (above + 0.5*p) / n
+		share := above/n - p
 		logX -= 1 / n
 		g.step[j] += 1 / n
 		g.live[j]++
