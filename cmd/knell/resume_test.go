@@ -19,12 +19,24 @@ import (
 	"knell/internal/random"
 )
 
-// asProgram has this test's own process, started anew, be the program.
-const asProgram = "KNELL_TEST_AS_PROGRAM"
+// The environment variables have this test's own process, started anew, be the program,
+// and let no file of its grow beyond so many bytes.
+const (
+	asProgram = "KNELL_TEST_AS_PROGRAM"
+	fileLimit = "KNELL_TEST_FILE_LIMIT"
+)
+
+// limitFiles applies fileLimit, where the system can.
+var limitFiles func(bytes string) error
 
 func TestMain(m *testing.M) {
 	if os.Getenv(asProgram) == "" {
 		os.Exit(m.Run())
+	}
+	if limit := os.Getenv(fileLimit); limit != "" {
+		if err := limitFiles(limit); err != nil {
+			panic(err)
+		}
 	}
 	ctx, stop := signal.NotifyContext(often(context.Background()), os.Interrupt, syscall.SIGTERM)
 	defer stop()

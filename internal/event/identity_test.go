@@ -52,9 +52,11 @@ func TestSettingsDigest(t *testing.T) {
 	same("spaces", replaced(t, tiny, "seed  = 7", "seed=7"))
 	same("the order of hypotheses", tiny[:first]+tiny[second:end]+tiny[first:second]+tiny[end:])
 	same("a hypothesis beside it", replaced(t, tiny, "[prior]", "[[hypothesis]]\nname = \"third\"\nmodel = \"ringdown\"\nmodes = [\"2,2,0\", \"2,2,1\"]\n\n[prior]"))
+	same("a prior that only another hypothesis has", replaced(t, tiny, "high = 12.0", "high = 11.0"))
 	other("a seed", replaced(t, tiny, "seed  = 7", "seed = 8"))
 	other("a setting of the sampler", replaced(t, tiny, "max_calls      = 0", "max_calls = 99999"))
 	other("a prior", replaced(t, tiny, "low = 40.0", "low = 40.5"))
+	other("a prior shared by modes", replaced(t, tiny, "amplitude    = { kind = \"uniform\", low = 0.0", "amplitude = { kind = \"uniform\", low = 1e-23"))
 	other("a mode", replaced(t, tiny, "model = \"ringdown\"\nmodes = [\"2,2,0\"]", "model = \"ringdown\"\nmodes = [\"2,2,0\", \"2,2,1\"]"))
 	if digestOf(t, tiny, "surface") == plain {
 		t.Error("two hypotheses have one digest")
