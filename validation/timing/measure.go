@@ -72,7 +72,7 @@ func measure(ctx context.Context, o options, status *report.StatusLine) (*docume
 	for _, k := range kinds {
 		for _, c := range times {
 			for _, w := range o.workers {
-				n := recommend(ctx, now, w, func(live int) float64 { return o.once(now, live, w, k, c, 0) })
+				n := recommend(ctx, least(now, w, c), func(live int) float64 { return o.once(now, live, w, k, c, 0) })
 				d.LivePoints = append(d.LivePoints, liveRow{setting{w, k.calls, k.drawing(), c.name, k}, n})
 				if err := step(); err != nil {
 					return nil, err
