@@ -86,10 +86,11 @@ type Analysis struct {
 
 // Sampler holds the sampler's settings.
 type Sampler struct {
-	LivePoints    int
-	EvidenceError float64
-	Remaining     float64
-	MaxCalls      int64
+	LivePoints       int
+	EvidenceError    float64 // nat
+	PosteriorSamples float64 // effective number, 0 for any
+	Remaining        float64 // nat
+	MaxCalls         int64
 }
 
 // Hypothesis is a named model with its priors.

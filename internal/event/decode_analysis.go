@@ -69,6 +69,7 @@ func (d *decoder) sampler(s *Sampler, top *table) {
 	}
 	s.LivePoints = int(t.integerOr("live_points", DefaultLivePoints, "a whole number from 100 to 1000000", func(n int64) bool { return n >= 100 && n <= 1e6 }))
 	s.EvidenceError = t.numberOr("evidence_error", DefaultEvidenceError, "nat, 0.01 or more", func(x float64) bool { return x >= 0.01 })
+	s.PosteriorSamples = t.numberOr("posterior_samples", 0, "an effective number of samples, 0 for any, up to 1e7", func(x float64) bool { return x >= 0 && x <= 1e7 })
 	s.Remaining = t.numberOr("remaining", DefaultRemaining, "nat, above 0 and at most 1", func(x float64) bool { return x > 0 && x <= 1 })
 	s.MaxCalls = t.integerOr("max_calls", 0, "0 for no limit, or at least live_points", func(n int64) bool { return n == 0 || n >= int64(s.LivePoints) })
 	t.finish()
