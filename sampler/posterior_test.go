@@ -1,6 +1,7 @@
 package sampler
 
 import (
+	"context"
 	"math"
 	"reflect"
 	"runtime"
@@ -19,15 +20,23 @@ func column(o *Outcome, k int) []float64 {
 
 // A Gaussian of width 0.05 and correlation 0.5 at the centre of the cube: mean,
 // covariance, quantiles and intervals are known, and the errors must be theirs.
+// By slices too, whose points have common starts.
 func TestPosteriorIsCalibrated(t *testing.T) {
+	t.Run("whatever is cheapest", func(t *testing.T) { calibratePosterior(t, gaussian(3, 0.5), 0) })
+	t.Run("slices", func(t *testing.T) { calibratePosterior(t, gaussian(2, 0.5), fromSlices) })
+}
+
+func calibratePosterior(t *testing.T, p *problem, force method) {
 	const n, sigmas, sigma = 20, 4, 0.05
-	p := gaussian(3, 0.5)
 	pulls := map[string][]float64{}
 	add := func(name string, q Quantity, want float64) {
 		pulls[name] = append(pulls[name], (q.Value-want)/q.Error)
 	}
 	for seed := range uint64(n) {
-		o := runOf(t, p, 300+seed, 120)
+		o, err := Run(context.Background(), p.target, Settings{Seed: 300 + seed, LivePoints: 120, force: force})
+		if err != nil {
+			t.Fatal(err)
+		}
 		post := o.Posterior()
 		x := [][]float64{column(o, 0), column(o, 1)}
 		mean, cov, err := post.Covariance(x)
