@@ -232,7 +232,7 @@ func (r *runner) prepare(st *stage) {
 		stream := func(i int) *rand.Rand {
 			return random.New(r.set.Seed, "bound", r.run, r.batches, uint64(i)).Rand
 		}
-		if b := newBound(st.u, r.dim, r.logX, r.set.Periodic, r.bound, r.set.Workers, stream); b != nil {
+		if b := newBound(st.u, r.dim, r.logX, r.set.Periodic, r.set.Reflective, r.bound, r.set.Workers, stream); b != nil {
 			r.bound, r.boundX = b, r.logX
 		}
 	}

@@ -49,6 +49,10 @@ type bound struct {
 	// logX when many numbers of clusters were last tried, by how much the
 	// log-volume of the best exceeded it, and how long to wait for the next time.
 	ladderX, ladderExcess, ladderWait float64
+
+	// logX when it was last decided which dimensions to lift, and how long to
+	// wait for the next time.
+	liftX, liftWait float64
 }
 
 // newBound fits a bound to n×dim points of the cube that are spread uniformly
@@ -56,10 +60,11 @@ type bound struct {
 // with the least volume. last, which may be nil, is the bound before. stream
 // returns the random stream of a number; the result does not depend on the
 // number of workers. newBound returns nil if the points are degenerate.
-func newBound(points []float64, dim int, logX float64, periodic []bool, last *bound, workers int, stream func(i int) *rand.Rand) *bound {
+func newBound(points []float64, dim int, logX float64, periodic, reflective []bool, last *bound, workers int, stream func(i int) *rand.Rand) *bound {
 	rng := stream(0)
 	n := len(points) / dim
 	b := &bound{frame: newFrame(points, dim, periodic), dim: dim, points: make([]float64, n*dim)}
+	b.lift(points, reflective, logX, last, rng)
 	for i := range n {
 		b.frame.into(points[i*dim:(i+1)*dim], b.points[i*dim:(i+1)*dim])
 	}

@@ -54,7 +54,7 @@ func (g region) draw(rng *rand.Rand, n int) []float64 {
 }
 
 func (g region) bound(seed uint64, points []float64) *bound {
-	return newBound(points, g.dim, math.Log(g.volume), g.periodic, nil, 2, func(i int) *rand.Rand {
+	return newBound(points, g.dim, math.Log(g.volume), g.periodic, nil, nil, 2, func(i int) *rand.Rand {
 		return random.New(seed, "bound", uint64(i)).Rand
 	})
 }

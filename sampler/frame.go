@@ -9,9 +9,12 @@ import (
 // points leave the widest gap: v = (u - shift) mod 1. A cluster that straddles
 // u = 0 is then in one piece. Where a periodic dimension is filled all round,
 // the cut is one more wall, which costs efficiency and nothing else.
+//
+// A reflective dimension may be lifted besides, see lift: unfolded at a wall.
 type frame struct {
 	shift    []float64 // nil when no dimension is periodic
 	periodic []bool
+	wall     []wall // nil when no dimension is lifted
 }
 
 // newFrame cuts the periodic dimensions at the widest gaps of the n×dim points.
@@ -43,8 +46,21 @@ func newFrame(points []float64, dim int, periodic []bool) frame {
 	return f
 }
 
-// into writes the frame coordinates of the cube point u to v.
+// into writes the frame coordinates of the cube point u to v. Of the two images
+// of a lifted coordinate the bits of the coordinate choose one.
 func (f *frame) into(u, v []float64) {
+	f.cut(u, v)
+	for k, w := range f.wall {
+		if w != noWall {
+			v[k] = w.unfold(u[k], side(k, u[k]))
+		}
+	}
+}
+
+// cut writes the coordinates of the cube point u with the periodic dimensions
+// cut and no dimension lifted to v: unlike into, it is continuous but for the
+// cuts.
+func (f *frame) cut(u, v []float64) {
 	copy(v, u)
 	for k, s := range f.shift {
 		if f.periodic[k] {
@@ -61,6 +77,16 @@ func (f *frame) outOf(v, u []float64) {
 			u[k] = wrap(v[k] + s)
 		}
 	}
+	for k, w := range f.wall {
+		if w != noWall {
+			u[k] = w.fold(v[k])
+		}
+	}
+}
+
+// round reports whether v = 0 and v = 1 of the dimension are the same place.
+func (f *frame) round(k int) bool {
+	return f.shift != nil && f.periodic[k] || f.wall != nil && f.wall[k] != noWall
 }
 
 // wrap returns x modulo 1, in [0, 1).

@@ -51,8 +51,12 @@ func (m *memory) learn(st *stage, fresh *slots) float64 {
 	mode := make([]int, n)
 	for i := range n {
 		x := points[i*dim : (i+1)*dim]
-		bd.frame.into(st.u[i*dim:(i+1)*dim], x)
+		u := st.u[i*dim : (i+1)*dim]
+		bd.frame.into(u, x)
 		mode[i] = bd.modeOf(x)
+		// The image of a lifted coordinate is chosen anew for each place, so that
+		// it would remember nothing: the coordinate itself is looked at.
+		bd.frame.cut(u, x)
 	}
 	modes := max(1, len(bd.ellipsoids))
 	metric := withinCovariance(points, dim, modes, mode)
@@ -73,8 +77,11 @@ func (m *memory) learn(st *stage, fresh *slots) float64 {
 			continue
 		}
 		whiten(points[s*dim:(s+1)*dim], mode[s], a)
-		bd.frame.into(fresh.u[slot*dim:(slot+1)*dim], x)
-		whiten(x, bd.modeOf(x), b)
+		u := fresh.u[slot*dim : (slot+1)*dim]
+		bd.frame.into(u, x)
+		end := bd.modeOf(x)
+		bd.frame.cut(u, x)
+		whiten(x, end, b)
 		for k := range sum {
 			sum[k] += a[k] * b[k]
 		}

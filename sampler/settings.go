@@ -59,6 +59,14 @@ type Settings struct {
 	// place. nil means that no dimension is periodic.
 	Periodic []bool
 
+	// Reflective says for each dimension whether it may be unfolded at a wall
+	// of the cube against which the likelihood piles up, which makes the region
+	// above a likelihood whole for the ellipsoids and lets slices go on beyond
+	// the wall. The evidence does not depend on it, only the calls. A dimension
+	// is unfolded only while the live points say that it pays. nil means that
+	// none may be; a dimension cannot be periodic as well.
+	Reflective []bool
+
 	// SliceSteps is the least number of slice-sampling steps that separate a
 	// new point from the live point it starts from, where slices are used; up
 	// to three times as many are taken where walkers are seen to stay near their
@@ -143,6 +151,14 @@ func (s Settings) resolve(dim int) (Settings, error) {
 	}
 	if s.Periodic != nil && len(s.Periodic) != dim {
 		return s, bad("Periodic", fmt.Sprintf("%d values", len(s.Periodic)), fmt.Sprintf("nil or one value for each of %d dimensions", dim))
+	}
+	if s.Reflective != nil && len(s.Reflective) != dim {
+		return s, bad("Reflective", fmt.Sprintf("%d values", len(s.Reflective)), fmt.Sprintf("nil or one value for each of %d dimensions", dim))
+	}
+	for k, reflective := range s.Reflective {
+		if reflective && s.Periodic != nil && s.Periodic[k] {
+			return s, bad("Reflective", fmt.Sprintf("true for dimension %d", k), "false, as it is periodic")
+		}
 	}
 	if s.SliceSteps == 0 {
 		s.SliceSteps = defaultSlicePerDim * dim

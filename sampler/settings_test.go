@@ -25,6 +25,8 @@ func TestBadSettingsAreNamed(t *testing.T) {
 		{"MaxCalls", Settings{MaxCalls: -1}},
 		{"Workers", Settings{Workers: -2}},
 		{"Periodic", Settings{Periodic: []bool{true}}},
+		{"Reflective", Settings{Reflective: []bool{true, false, false}}},
+		{"Reflective", Settings{Periodic: []bool{false, true}, Reflective: []bool{true, true}}},
 		{"SliceSteps", Settings{SliceSteps: -1}},
 	} {
 		_, err := Run(context.Background(), gaussian(2, 0).target, tc.s)

@@ -22,7 +22,8 @@ const (
 //     a direction of that ellipsoid or a difference of two of its points, on
 //     the chord of the ellipsoid, which needs no stepping out;
 //   - anywhere, along such a direction of an ellipsoid that is picked without
-//     regard to where the walker is, stepping out from a random interval;
+//     regard to where the walker is, stepping out from a random interval, round
+//     periodic dimensions and on through the wall of lifted ones;
 //   - a jump to the corresponding place of another ellipsoid, accepted with the
 //     ratio of the volumes, so that modes keep their share of the volume.
 //
@@ -103,7 +104,8 @@ func (w *worker) within(b *bound, threshold, l float64, rng *rand.Rand) (float64
 	return w.shrink(b, c, lo, hi, threshold, l, rng)
 }
 
-// anywhere takes one step with stepping out; periodic dimensions go round.
+// anywhere takes one step with stepping out; periodic and
+// lifted dimensions go round.
 func (w *worker) anywhere(b *bound, threshold, l float64, rng *rand.Rand) (float64, error) {
 	width := 1.0
 	if len(b.ellipsoids) == 0 {
@@ -137,6 +139,17 @@ func (w *worker) anywhere(b *bound, threshold, l float64, rng *rand.Rand) (float
 
 // along sets w.dir to a direction of ellipsoid c, as long as a typical chord: a
 // random one in its metric, or the difference of two of its points.
+//
+// The first is a whitened direction on the scale of one cluster, not of all
+// the points: on a ridge covered by many ellipsoids each gives the direction and
+// the width of the ridge where it is. The second is a differential one: within a
+// cluster whose points bend, two of them lie along the bend more often than
+// the covariance says, and their distance is a step that fits it. Both points are
+// of one cluster, for the difference of two clusters leads out of a curved ridge;
+// from one mode to another jump goes.
+//
+// Neither depends on where the walker is but through c, and within keeps to the
+// cell of c: the direction back has the same probability.
 func (w *worker) along(b *bound, c int, rng *rand.Rand) {
 	e := &b.ellipsoids[c]
 	if len(e.members) < 2 || rng.IntN(2) == 0 {
@@ -158,11 +171,13 @@ func (w *worker) along(b *bound, c int, rng *rand.Rand) {
 	}
 }
 
-// move sets w.trial to w.x + t w.dir, wrapped in periodic dimensions.
+// move sets w.trial to w.x + t w.dir, wrapped in periodic dimensions and in
+// those lifted at a wall, where going on across v = ½ or round v = 1 is what a
+// reflection at the walls is in u.
 func (w *worker) move(b *bound, t float64) {
 	for k := range w.trial {
 		w.trial[k] = w.x[k] + t*w.dir[k]
-		if b.frame.shift != nil && b.frame.periodic[k] {
+		if b.frame.round(k) {
 			w.trial[k] = wrap(w.trial[k])
 		}
 	}

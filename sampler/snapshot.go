@@ -33,7 +33,7 @@ func (s Settings) identity(dim int) []setting {
 		say("version", stateVersion), say("problem", s.Problem), say("number of dimensions", dim), say("seed", s.Seed),
 		say("LivePoints", s.LivePoints), say("EvidenceError", s.EvidenceError), say("PosteriorSamples", s.PosteriorSamples),
 		say("MaxGrowth", s.MaxGrowth), say("Remaining", s.Remaining), say("MaxCalls", s.MaxCalls),
-		say("Periodic", s.Periodic), say("SliceSteps", s.SliceSteps), say("way of drawing", s.force),
+		say("Periodic", s.Periodic), say("Reflective", s.Reflective), say("SliceSteps", s.SliceSteps), say("way of drawing", s.force),
 	}
 }
 

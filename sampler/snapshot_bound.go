@@ -3,11 +3,13 @@ package sampler
 // boundState is a bound as it is kept.
 type boundState struct {
 	Shift                                        []float64 // of the frame
+	Wall                                         []wall
 	Points, Pooled                               []float64
 	Dim, Clusters                                int
 	Ellipsoids                                   []ellipsoidState
 	Cumulative, Weight                           []float64
 	LogVolume, LadderX, LadderExcess, LadderWait float64
+	LiftX, LiftWait                              float64
 	Mode                                         []int
 }
 
@@ -19,9 +21,10 @@ type ellipsoidState struct {
 
 func (b *bound) keep() boundState {
 	k := boundState{
-		Shift: b.frame.shift, Points: b.points, Pooled: b.pooled.a, Dim: b.dim, Clusters: b.clusters,
+		Shift: b.frame.shift, Wall: b.frame.wall, Points: b.points, Pooled: b.pooled.a, Dim: b.dim, Clusters: b.clusters,
 		Cumulative: b.cumulative, Weight: b.weight, LogVolume: b.logVolume, Mode: b.mode,
 		LadderX: b.ladderX, LadderExcess: b.ladderExcess, LadderWait: b.ladderWait,
+		LiftX: b.liftX, LiftWait: b.liftWait,
 	}
 	for i := range b.ellipsoids {
 		e := &b.ellipsoids[i]
@@ -32,9 +35,10 @@ func (b *bound) keep() boundState {
 
 func (k *boundState) bound(s Settings) *bound {
 	b := &bound{
-		frame: frame{shift: k.Shift, periodic: s.Periodic}, points: k.Points, pooled: scatter{k.Dim, k.Pooled},
+		frame: frame{shift: k.Shift, periodic: s.Periodic, wall: k.Wall}, points: k.Points, pooled: scatter{k.Dim, k.Pooled},
 		dim: k.Dim, clusters: k.Clusters, cumulative: k.Cumulative, weight: k.Weight, logVolume: k.LogVolume, mode: k.Mode,
 		ladderX: k.LadderX, ladderExcess: k.LadderExcess, ladderWait: k.LadderWait,
+		liftX: k.LiftX, liftWait: k.LiftWait,
 	}
 	for _, e := range k.Ellipsoids {
 		b.ellipsoids = append(b.ellipsoids, ellipsoid{mean: e.Mean, factor: e.Factor, inverse: e.Inverse, logDet: e.LogDet, radius2: e.Radius2, members: e.Members})
