@@ -5,6 +5,7 @@ import (
 	"context"
 	"encoding/json"
 	"io"
+	"math"
 	"strings"
 	"testing"
 )
@@ -20,7 +21,31 @@ func documentOf(t *testing.T, args string) document {
 	return d
 }
 
-// The short version of the table for evidences, of a peak and of a plateau.
+// leastShort is the least gain in the short version below: the run before growth is
+// half of the calls of such a small number of samples, which no growth can win back.
+const leastShort = 1.5
+
+// The short version of the table's first row: few seeds, few samples.
+func TestGrowthForThePosterior(t *testing.T) {
+	d := documentOf(t, "--use posterior --seeds 2 --live 250 --samples 8000 --seed 3")
+	r := d.Problems[0]
+	if len(d.Problems) != 1 || r.Name != "gaussian" || r.Dim != 8 || r.Seeds != 2 {
+		t.Fatalf("problems %+v, want the 8-dimensional Gaussian with 2 seeds", d.Problems)
+	}
+	// The live points of the static runs come from one run of 250, whose number of
+	// effective samples is known to a tenth.
+	if float64(r.Grown.Samples) < 8000 || math.Abs(float64(r.Static.Samples)-8000) > 2400 {
+		t.Errorf("%.0f and %.0f effective samples, want 8000 at least and about 8000", r.Grown.Samples, r.Static.Samples)
+	}
+	if float64(r.Ratio) < leastShort {
+		t.Errorf("%.2f times fewer calls per sample, want %g", r.Ratio, leastShort)
+	}
+	if r.Mean == nil || r.Variance == nil {
+		t.Error("no calibration of mean and variance")
+	}
+}
+
+// The same for evidences, of a peak and of a plateau.
 func TestGrowthForTheEvidence(t *testing.T) {
 	d := documentOf(t, "--use evidence --problems gaussian,half-plateau --dims 2 --seeds 6 --live 64 --seed 2")
 	if len(d.Problems) != 2 {
