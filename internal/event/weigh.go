@@ -74,14 +74,15 @@ func (p *Prepared) Weigh(ctx context.Context, o Options) (*report.Weighing, []re
 		k.begin()
 		settings := sampler.Settings{
 			// A hypothesis keeps its stream whichever others stand beside it.
-			Seed:          random.New(c.Seed, "hypothesis "+h.Name).Uint64(),
-			LivePoints:    c.Sampler.LivePoints,
-			EvidenceError: c.Sampler.EvidenceError,
-			Remaining:     c.Sampler.Remaining,
-			MaxCalls:      c.Sampler.MaxCalls,
-			Workers:       o.Workers,
-			Periodic:      h.periodic,
-			KeepEvery:     o.KeepEvery,
+			Seed:             random.New(c.Seed, "hypothesis "+h.Name).Uint64(),
+			LivePoints:       c.Sampler.LivePoints,
+			EvidenceError:    c.Sampler.EvidenceError,
+			PosteriorSamples: c.Sampler.PosteriorSamples,
+			Remaining:        c.Sampler.Remaining,
+			MaxCalls:         c.Sampler.MaxCalls,
+			Workers:          o.Workers,
+			Periodic:         h.periodic,
+			KeepEvery:        o.KeepEvery,
 			Progress: func(s sampler.Progress) {
 				k.calls = s.Calls
 				if o.Progress != nil {
