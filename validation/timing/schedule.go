@@ -9,6 +9,9 @@ import (
 // each. Workers take slots in order, the oldest batch's first, and do the calls of a
 // slot one after another. Batch b is issued once batch b - inFlight is complete and the
 // main goroutine has spent its own time on it.
+//
+// Not in it: a point that lands below what the threshold has become meanwhile is replaced
+// by the next batch, so that real batches have up to a tenth more slots.
 type schedule struct {
 	share    int
 	inFlight int
