@@ -48,6 +48,7 @@ type ellipsoid struct {
 	logDet  float64   // ln det L
 	radius2 float64
 	members []int // indices of the points it was fitted to
+	shape   shape // that was used besides; only while the bound is fitted
 }
 
 // ellipsoid returns the ellipsoid of covariance s and the given mean, radius2
@@ -96,12 +97,18 @@ func (s scatter) ellipsoid(mean []float64) (ellipsoid, bool) {
 	return e, true
 }
 
-// fitEllipsoid fits the given rows of the n×dim points: their mean, their
-// covariance drawn towards the pooled one as if a third of a point more had that, and
-// the least radius that holds them, but not less than if they filled it
-// uniformly (radius2 = dim + 2 in units of the covariance). So any number of
-// points has a fit. It reports false if the covariance is singular.
+// fitEllipsoid is fitShaped with the pooled covariance as if a third of a point
+// more had that.
 func fitEllipsoid(points []float64, dim int, members []int, pooled scatter) (ellipsoid, bool) {
+	return fitShaped(points, dim, members, pooledShape(pooled))
+}
+
+// fitShaped fits the given rows of the n×dim points: their mean, their
+// covariance together with a shape, and the least radius that holds them, but
+// not less than if they filled it uniformly (radius2 = dim + 2 in units of the
+// covariance). So any number of points has a fit. It reports false if the
+// covariance is singular.
+func fitShaped(points []float64, dim int, members []int, s shape) (ellipsoid, bool) {
 	mean := make([]float64, dim)
 	n := float64(len(members))
 	for _, i := range members {
@@ -120,15 +127,14 @@ func fitEllipsoid(points []float64, dim int, members []int, pooled scatter) (ell
 		}
 		cov.add(d)
 	}
-	weight := 0.3
 	for i := range cov.a {
-		cov.a[i] = (cov.a[i] + weight*pooled.a[i]) / (n + weight)
+		cov.a[i] = (cov.a[i] + s.scatter.a[i]) / (n + s.weight)
 	}
 	e, ok := cov.ellipsoid(mean)
 	if !ok {
 		return e, false
 	}
-	e.members = members
+	e.members, e.shape = members, s
 	e.radius2 = float64(dim + 2)
 	for _, i := range members {
 		e.radius2 = max(e.radius2, e.distance2(points[i*dim:(i+1)*dim], math.Inf(1)))
