@@ -58,8 +58,9 @@ func program(args ...string) (c *exec.Cmd, stderr *bytes.Buffer) {
 }
 
 // lasting is an event that takes a second or two, in which the runs of both hypotheses
-// are long enough to be broken off.
-var lasting = strings.NewReplacer("live_points    = 100", "live_points    = 200", "max_calls      = 1500", "max_calls = 15000").Replace(tiny)
+// are long enough to be broken off. The first ends by itself and is then weighed by
+// further routes, the second at the limit of calls.
+var lasting = strings.Replace(tiny, "max_calls      = 1500", "max_calls = 16000", 1)
 
 // written is the content of a result directory, with evidence.json's clocks taken out.
 func written(t *testing.T, directory string) map[string]string {
@@ -126,6 +127,9 @@ func TestKilledAndGoneOn(t *testing.T) {
 		t.Fatalf("%v: %s", err, stderr)
 	}
 	took := time.Since(began)
+	if !strings.Contains(readFile(t, "whole", "evidence.json"), `"bridge"`) {
+		t.Error("the first hypothesis did not end by itself: lasting wants a higher limit of calls")
+	}
 
 	rng := random.New(20, "moments to kill at")
 	kills, resumed := 0, 0
@@ -135,7 +139,7 @@ func TestKilledAndGoneOn(t *testing.T) {
 			t.Fatal(err)
 		}
 		if kills < 6 {
-			time.AfterFunc(time.Duration((0.1+0.6*rng.Float64())*float64(took)), func() { _ = c.Process.Kill() })
+			time.AfterFunc(time.Duration((0.1+0.3*rng.Float64())*float64(took)), func() { _ = c.Process.Kill() })
 		}
 		err := c.Wait()
 		if strings.Contains(stderr.String(), "goes on from") {
