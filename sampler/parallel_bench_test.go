@@ -47,9 +47,11 @@ func spin(n int) uint64 {
 func spinsOf(d time.Duration) int {
 	const trial = 200_000
 	best := time.Duration(1 << 62)
+	var sink uint64
+	defer func() { runtime.KeepAlive(sink) }()
 	for range 10 {
 		began := time.Now()
-		spin(trial)
+		sink += spin(trial)
 		best = min(best, time.Since(began))
 	}
 	return int(float64(trial) * float64(d) / float64(best))

@@ -65,7 +65,8 @@ type kind struct {
 
 // newRow compares and judges what there is of a job.
 func newRow(j job, o options, runs []oneRun) row {
-	r := row{Use: j.use, Name: j.Name, Dim: j.Dim, Truth: report.Number(j.Truth), Source: j.Source, Goal: report.Number(math.NaN()), Faults: []string{}}
+	nan := report.Number(math.NaN())
+	r := row{Use: j.use, Name: j.Name, Dim: j.Dim, Truth: report.Number(j.Truth), Source: j.Source, Goal: nan, Ratio: nan, RatioError: nan, Faults: []string{}}
 	var grown, static []oneRun
 	for i, q := range runs {
 		name, list := "static", &static
@@ -87,11 +88,16 @@ func newRow(j job, o options, runs []oneRun) row {
 			*list = append(*list, q)
 		}
 	}
-	r.Grown.LivePoints = o.live
+	r.Grown.LivePoints, r.RatioLimit = o.live, mostCost
+	if j.use == posteriorUse {
+		r.RatioLimit = leastGain
+	}
 	r.Seeds = min(len(grown), len(static))
 	r.Grown.average(grown, j.use)
 	r.Static.average(static, j.use)
-	r.compare()
+	if r.Seeds > 1 {
+		r.compare()
+	}
 	r.judge(j, grown)
 	r.Passed = len(r.Faults) == 0
 	return r
@@ -125,10 +131,8 @@ func (k *kind) average(runs []oneRun, use string) {
 // compare sets the ratio and judges it.
 func (r *row) compare() {
 	above, below := r.Grown, r.Static
-	r.RatioLimit = mostCost
 	if r.Use == posteriorUse {
 		above, below = below, above
-		r.RatioLimit = leastGain
 	}
 	ratio := above.cost / below.cost
 	err := ratio * math.Hypot(above.costError/above.cost, below.costError/below.cost)
