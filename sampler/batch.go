@@ -232,7 +232,7 @@ func (r *runner) prepare(st *stage) {
 		stream := func(i int) *rand.Rand {
 			return random.New(r.set.Seed, "bound", r.run, r.batches, uint64(i)).Rand
 		}
-		if b := newBound(st.u, r.dim, r.logX, r.set.Periodic, r.set.Reflective, r.bound, r.set.Workers, stream); b != nil {
+		if b := newBoundAfter(r.recent(n), st.u, r.dim, r.logX, r.set.Periodic, r.set.Reflective, r.bound, r.set.Workers, stream); b != nil {
 			r.bound, r.boundX = b, r.logX
 		}
 	}
@@ -244,6 +244,14 @@ func (r *runner) prepare(st *stage) {
 	st.bound = r.bound
 	st.method, calls = choose(r.logX, r.bound, slice, r.set.force)
 	st.limit = int64(slotPatience*calls) + 200
+}
+
+// recent returns the points that were removed last, as many as help n live ones.
+func (r *runner) recent(n int) []float64 {
+	if r.path != nil {
+		return r.beside.below(r.threshold, lookBack(r.dim, r.set.LivePoints))
+	}
+	return r.flat[max(0, len(r.flat)-lookBack(r.dim, n)*r.dim):]
 }
 
 // insert merges the points of a flight into the sorted live ones. Those that the

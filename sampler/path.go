@@ -74,6 +74,23 @@ func (c *companions) above(threshold float64, most int, u, l []float64) ([]float
 	return u, l
 }
 
+// below returns up to n points of the first run that died last at or below the
+// threshold, in order.
+func (c *companions) below(threshold float64, n int) []float64 {
+	o := c.parts[0]
+	end, _ := slices.BinarySearchFunc(o.LogLikelihood, threshold, func(l, t float64) int {
+		if l <= t {
+			return -1
+		}
+		return 1
+	})
+	var u []float64
+	for _, p := range o.Points[max(0, end-n):end] {
+		u = append(u, p...)
+	}
+	return u
+}
+
 // follow goes to the next level of the path.
 func (r *runner) follow() {
 	p := r.path

@@ -5,7 +5,7 @@ type boundState struct {
 	Shift                                        []float64 // of the frame
 	Wall                                         []wall
 	Points, Pooled                               []float64
-	Dim, Clusters                                int
+	Dim, Clusters, Way                           int
 	Ellipsoids                                   []ellipsoidState
 	Cumulative, Weight                           []float64
 	LogVolume, LadderX, LadderExcess, LadderWait float64
@@ -21,7 +21,7 @@ type ellipsoidState struct {
 
 func (b *bound) keep() boundState {
 	k := boundState{
-		Shift: b.frame.shift, Wall: b.frame.wall, Points: b.points, Pooled: b.pooled.a, Dim: b.dim, Clusters: b.clusters,
+		Shift: b.frame.shift, Wall: b.frame.wall, Points: b.points, Pooled: b.pooled.a, Dim: b.dim, Clusters: b.clusters, Way: b.way,
 		Cumulative: b.cumulative, Weight: b.weight, LogVolume: b.logVolume, Mode: b.mode,
 		LadderX: b.ladderX, LadderExcess: b.ladderExcess, LadderWait: b.ladderWait,
 		LiftX: b.liftX, LiftWait: b.liftWait,
@@ -36,7 +36,7 @@ func (b *bound) keep() boundState {
 func (k *boundState) bound(s Settings) *bound {
 	b := &bound{
 		frame: frame{shift: k.Shift, periodic: s.Periodic, wall: k.Wall}, points: k.Points, pooled: scatter{k.Dim, k.Pooled},
-		dim: k.Dim, clusters: k.Clusters, cumulative: k.Cumulative, weight: k.Weight, logVolume: k.LogVolume, mode: k.Mode,
+		dim: k.Dim, clusters: k.Clusters, way: k.Way, cumulative: k.Cumulative, weight: k.Weight, logVolume: k.LogVolume, mode: k.Mode,
 		ladderX: k.LadderX, ladderExcess: k.LadderExcess, ladderWait: k.LadderWait,
 		liftX: k.LiftX, liftWait: k.LiftWait,
 	}

@@ -97,7 +97,7 @@ func TestDecodeSound(t *testing.T) {
 	if want := (Analysis{1024, 1, 40, 460, 0, 0.125}); c.Analysis != want {
 		t.Errorf("got analysis %+v, want %+v", c.Analysis, want)
 	}
-	if want := (Sampler{100, 1, DefaultRemaining, 0}); c.Sampler != want {
+	if want := (Sampler{100, 1, 0, DefaultRemaining, 0}); c.Sampler != want {
 		t.Errorf("got sampler %+v, want %+v", c.Sampler, want)
 	}
 	// Parameters of the models: a periodic one and one with a default need no prior.
@@ -121,7 +121,7 @@ func TestDecodeDefaults(t *testing.T) {
 	if c.Title != "bells" || c.Seed != 1 || c.Analysis.Gate != DefaultGate || c.Analysis.Start != 0 {
 		t.Errorf("got title %q, seed %d, gate %g, start %g", c.Title, c.Seed, c.Analysis.Gate, c.Analysis.Start)
 	}
-	if want := (Sampler{DefaultLivePoints, DefaultEvidenceError, DefaultRemaining, 0}); c.Sampler != want {
+	if want := (Sampler{DefaultLivePoints, DefaultEvidenceError, 0, DefaultRemaining, 0}); c.Sampler != want {
 		t.Errorf("got sampler %+v, want %+v", c.Sampler, want)
 	}
 }
