@@ -17,9 +17,10 @@ const (
 	// are not known yet, so more of them leave fewer to fit ellipsoids to.
 	BatchShare, InFlight = 32, 4
 
-	// rebuildStep is the compression, in nats, after which the ellipsoids are
-	// fitted anew. Until then they are too large by at most this much.
-	rebuildStep = 0.1
+	// shrinkStep is the compression, in nats, after which the ellipsoids are drawn
+	// in; until then they are too large by at most this much. They are fitted anew
+	// after rebuildStep, or twice that where there is only one.
+	shrinkStep, rebuildStep = 0.1, 0.3
 
 	// slotPatience is how many times the expected calls a slot spends on
 	// rejection before it turns to slices: e^-40 is never by chance.
@@ -69,6 +70,7 @@ type runner struct {
 
 	bound      *bound
 	boundX     float64 // logX when it was built
+	shrunkX    float64 // and when it was last drawn in
 	sliceCalls float64 // measured calls per point by slices
 	memory     memory  // of slices, and how many steps they need
 	ranks      ranks
@@ -228,13 +230,17 @@ func (r *runner) land() error {
 func (r *runner) prepare(st *stage) {
 	n := len(st.l)
 	enough := 2*n >= r.set.LivePoints
-	if needs := math.Exp(-r.logX) > priorCalls; needs && enough && (r.bound == nil || r.boundX-r.logX > rebuildStep) {
-		stream := func(i int) *rand.Rand {
-			return random.New(r.set.Seed, "bound", r.run, r.batches, uint64(i)).Rand
-		}
+	stream := func(i int) *rand.Rand {
+		return random.New(r.set.Seed, "bound", r.run, r.batches, uint64(i)).Rand
+	}
+	needs := math.Exp(-r.logX) > priorCalls && enough
+	switch {
+	case needs && (r.bound == nil || r.boundX-r.logX > r.bound.lasts()):
 		if b := newBoundAfter(r.recent(n), st.u, r.dim, r.logX, r.set.Periodic, r.set.Reflective, r.bound, r.set.Workers, stream); b != nil {
-			r.bound, r.boundX = b, r.logX
+			r.bound, r.boundX, r.shrunkX = b, r.logX, r.logX
 		}
+	case needs && r.shrunkX-r.logX > shrinkStep:
+		r.bound, r.shrunkX = r.bound.shrunk(st.u), r.logX
 	}
 	slice := r.sliceCalls
 	if float64(n) < fewSurvivors*float64(r.set.LivePoints) {
@@ -244,6 +250,14 @@ func (r *runner) prepare(st *stage) {
 	st.bound = r.bound
 	st.method, calls = choose(r.logX, r.bound, slice, r.set.force)
 	st.limit = int64(slotPatience*calls) + 200
+}
+
+// lasts is the compression, in nats, after which a bound is fitted anew.
+func (b *bound) lasts() float64 {
+	if b.clusters == 1 {
+		return 2 * rebuildStep
+	}
+	return rebuildStep
 }
 
 // recent returns the points that were removed last, as many as help n live ones.

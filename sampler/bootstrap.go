@@ -11,9 +11,9 @@ import (
 
 const (
 	// mostReplicas of a run, or as many as keep replicas times points below
-	// replicaWork, but at least leastReplicas. A standard deviation over 200 is
-	// good to 5 percent.
-	mostReplicas, leastReplicas = 200, 50
+	// replicaWork, but at least leastReplicas. A standard deviation over 100 is
+	// good to 7 percent.
+	mostReplicas, leastReplicas = 100, 50
 	replicaWork                 = 20_000_000
 
 	// doubtfulTension is the disagreement between the two errors of ln Z, in
@@ -36,6 +36,8 @@ type resampling struct {
 	born   []int32   // strands of the points in the order they were drawn
 	before []int32   // how many of born were drawn below each dead point
 	top    float64   // largest expected ln(L X), to keep numbers in range
+	up     []float64 // expected volume before each dead point over that after it
+	scale  []float64 // its likelihood times the latter, over the largest
 	start  shrinkage
 	most   int       // replicas
 	swell  float64   // n/(n-1): a bootstrap variance of n strands is too small by it
@@ -81,6 +83,7 @@ func (o *Outcome) resample(shift []float64) *resampling {
 		return 0
 	})
 	r.born, r.before = make([]int32, n), make([]int32, n)
+	r.up, r.scale = make([]float64, n), make([]float64, n)
 	for e, i := range order {
 		r.born[e] = o.Strand[i]
 	}
@@ -91,8 +94,13 @@ func (o *Outcome) resample(shift []float64) *resampling {
 			e++
 		}
 		r.before[i] = int32(e)
+		r.up[i] = math.Exp(1 / float64(o.LiveCount[i]))
 		logX -= 1 / float64(o.LiveCount[i])
-		r.top = max(r.top, r.logL(i)+logX)
+		r.scale[i] = r.logL(i) + logX
+		r.top = max(r.top, r.scale[i])
+	}
+	for i, l := range r.scale {
+		r.scale[i] = math.Exp(l - r.top)
 	}
 	return r
 }
@@ -122,10 +130,13 @@ func (r *resampling) draw(at int, times []int32) (logX float64) {
 func (r *resampling) weigh(times []int32, logX float64, weight []float64) float64 {
 	e, live := int32(0), 0
 	last, sum := -1, 0.0
+	// The replica's volume over the expected one after each point of the run.
+	v := math.Exp(logX - r.start.mean)
 	for i, s := range r.o.Strand {
 		for ; e < r.before[i]; e++ {
 			live += int(times[r.born[e]])
 		}
+		v *= r.up[i]
 		m := int(times[s])
 		if m == 0 {
 			weight[i] = 0
@@ -135,14 +146,21 @@ func (r *resampling) weigh(times []int32, logX float64, weight []float64) float6
 		for k := range m {
 			down += 1 / float64(live-k)
 		}
-		weight[i] = math.Exp(r.logL(i)+logX-r.top) * -math.Expm1(-down)
+		lost := 1 - expm(-down)
+		if down < 1e-5 { // the difference has no digits to spare
+			lost = -math.Expm1(-down)
+		}
+		weight[i] = r.scale[i] * v * lost
 		sum += weight[i]
-		logX -= down
+		v -= v * lost
 		live -= m
 		last = i
 	}
 	if last >= 0 { // the volume above the last point, as in Outcome.weigh
-		rest := math.Exp(r.logL(last) + logX - r.top)
+		for _, up := range r.up[last+1:] {
+			v /= up
+		}
+		rest := r.scale[last] * v
 		weight[last] += rest
 		sum += rest
 	}

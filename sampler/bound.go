@@ -7,14 +7,13 @@ import (
 )
 
 const (
-	folds       = 5 // each cross-validation round leaves out a fifth
-	foldRounds  = 4
 	volumeTrial = 1000 // draws that measure the volume of the union
 
 	// Many numbers of clusters are tried anew after ladderStep of compression,
-	// twice that after each time that none was better than the last, and at
+	// twice that after each time that none was better by ladderGain than the last, and at
 	// once when the bound has become worse by ladderWorse. In nats.
 	ladderStep, ladderMost, ladderWorse = 0.5, 4, 0.2
+	ladderGain, ladderGiveUp            = 0.05, 1
 
 	// foresight times the excess of the factor found by cross-validation over 1
 	// is what the squared radius grows by. 1 costs 5 to 10 % more calls in few
@@ -57,6 +56,7 @@ type bound struct {
 	clusters   int       // that were asked for
 	way        int       // index in ways of the shapes
 	ellipsoids []ellipsoid
+	tight      []float64 // squared radii that just held the points
 	cumulative []float64 // running sum of the ellipsoids' shares of the volume
 	weight     []float64 // running sum of their shares of the points
 	logVolume  float64   // of the union within the cube, measured by draws
@@ -102,42 +102,61 @@ func newBoundAfter(recent, points []float64, dim int, logX float64, periodic, re
 	if best.ellipsoids == nil {
 		return nil
 	}
+	// loose tells whether another partition could be better: for a region that is
+	// an ellipsoid, the one that just holds the points is no larger than it should.
+	loose := func() bool { return best.plain > logX+tightEnough }
 	// due tells whether all that was not best before may be tried anew.
 	due := func() bool {
 		excess := best.volume - logX
-		return excess > tightEnough && (last == nil || b.ladderX-logX > b.ladderWait || excess > b.ladderExcess+ladderWorse)
+		return loose() && (last == nil || b.ladderX-logX > b.ladderWait || excess > b.ladderExcess+ladderWorse)
 	}
 	if due() {
 		best = b.otherWays(best, rng)
 	}
-	try := func(ks []int, base int) {
+	// try returns the least volume of several numbers of clusters.
+	try := func(ks []int, base int) float64 {
 		way := best.way
 		if last != nil && last.clusters > 1 && len(recent) > 0 {
 			way = last.way
 		}
+		least := math.Inf(1)
 		for _, t := range b.try(ks, one.pooled, way, last, workers, func(i int) *rand.Rand { return stream(base + i) }) {
-			if t.ellipsoids != nil && t.volume < best.volume {
+			if t.ellipsoids == nil {
+				continue
+			}
+			least = min(least, t.volume)
+			if t.volume < best.volume {
 				best = t
 			}
 		}
+		return least
 	}
-	if last != nil && best.volume > logX+tightEnough {
+	if last != nil && last.clusters > 1 && loose() {
 		try(neighbours(n, dim, last.clusters), 1)
 	}
 	if due() {
 		before := best.volume
-		try(ladder(n, dim), 1+len(neighbours(n, dim, n)))
+		base := 1 + len(neighbours(n, dim, n))
+		// Two at a time. If both are far from the best, more would be further.
+		for i, ks := range slices.Collect(slices.Chunk(ladder(n, dim), 2)) {
+			if try(ks, base+2*i) > best.volume+ladderGiveUp {
+				break
+			}
+		}
 		if best.k > 1 {
 			best = b.otherWays(best, rng)
 		}
 		b.ladderX, b.ladderExcess = logX, best.volume-logX
-		if best.volume < before {
+		if best.volume < before-ladderGain {
 			b.ladderWait = ladderStep
 		} else {
 			b.ladderWait = min(2*b.ladderWait, ladderMost)
 		}
 	}
 	b.ellipsoids, b.pooled, b.clusters, b.way = best.ellipsoids, best.pooled, best.k, best.way
+	for c := range b.ellipsoids {
+		b.tight = append(b.tight, b.ellipsoids[c].radius2)
+	}
 	b.enlarge(foldRounds, rng)
 	b.reach()
 	b.measure(rng)
@@ -147,6 +166,37 @@ func newBoundAfter(recent, points []float64, dim int, logX float64, periodic, re
 		b.ellipsoids[c].shape = shape{}
 	}
 	return b
+}
+
+// shrunk returns b drawn in to n×dim points of the cube that lie above a higher
+// threshold: centres and shapes stay, and the squared radii keep their proportion
+// to those that just hold the points. It costs a tenth of a new bound.
+func (b *bound) shrunk(points []float64) *bound {
+	s := *b
+	s.ellipsoids = slices.Clone(b.ellipsoids)
+	s.tight, s.cumulative, s.weight = nil, nil, nil
+	reach := make([]float64, len(s.ellipsoids))
+	count := make([]int, len(s.ellipsoids))
+	x := make([]float64, b.dim)
+	for i := 0; i < len(points); i += b.dim {
+		b.frame.into(points[i:i+b.dim], x)
+		c := b.cell(x)
+		count[c]++
+		reach[c] = max(reach[c], b.ellipsoids[c].distance2(x, math.Inf(1)))
+	}
+	for c := range s.ellipsoids {
+		e := &s.ellipsoids[c]
+		tight := b.tight[c]
+		if count[c] > 2*b.dim { // fewer do not say where it ends
+			tight = min(tight, reach[c])
+		}
+		e.radius2 *= tight / b.tight[c]
+		s.tight = append(s.tight, tight)
+	}
+	// The share of draws within the cube, and that in several, hardly change.
+	s.logVolume += totalVolume(s.ellipsoids) - totalVolume(b.ellipsoids)
+	s.shares()
+	return &s
 }
 
 // framed returns the frame coordinates of points of the cube.
@@ -250,40 +300,6 @@ func (b *bound) reach() {
 	}
 }
 
-// crossValidate leaves out parts of the members of ellipsoid c in turn, fits the
-// rest alone, and returns the factor by which the squared radius of such a fit
-// must grow, at most, to hold the points it has not seen and that no other
-// ellipsoid holds. It is at least 1.
-func (b *bound) crossValidate(c, rounds int, rng *rand.Rand) float64 {
-	dim := b.dim
-	e := &b.ellipsoids[c]
-	n := len(e.members)
-	grow := 1.0
-	order := append([]int(nil), e.members...)
-	rest := make([]int, 0, n)
-	for range rounds {
-		rng.Shuffle(n, func(i, j int) { order[i], order[j] = order[j], order[i] })
-		for f := range folds {
-			lo, hi := f*n/folds, (f+1)*n/folds
-			if lo == hi || hi-lo == n {
-				continue
-			}
-			rest = append(append(rest[:0], order[:lo]...), order[hi:]...)
-			fit, ok := fitShaped(b.points, dim, rest, e.shape)
-			if !ok {
-				continue
-			}
-			for _, i := range order[lo:hi] {
-				x := b.points[i*dim : (i+1)*dim]
-				if d := fit.distance2(x, math.Inf(1)) / fit.radius2; d > grow && !b.held(x, c) {
-					grow = d
-				}
-			}
-		}
-	}
-	return grow
-}
-
 // held reports whether an ellipsoid other than number c holds x.
 func (b *bound) held(x []float64, c int) bool {
 	for o := range b.ellipsoids {
@@ -306,9 +322,8 @@ func totalVolume(es []ellipsoid) float64 {
 	return top + math.Log(sum)
 }
 
-// measure sets the shares of the ellipsoids and measures the volume of their
-// union within the cube.
-func (b *bound) measure(rng *rand.Rand) {
+// shares sets the running sums of the ellipsoids' shares.
+func (b *bound) shares() {
 	total := totalVolume(b.ellipsoids)
 	var sum, points float64
 	for c := range b.ellipsoids {
@@ -318,6 +333,12 @@ func (b *bound) measure(rng *rand.Rand) {
 		b.cumulative = append(b.cumulative, sum)
 		b.weight = append(b.weight, points)
 	}
+}
+
+// measure sets the shares of the ellipsoids and measures the volume of their
+// union within the cube.
+func (b *bound) measure(rng *rand.Rand) {
+	b.shares()
 	x, z := make([]float64, b.dim), make([]float64, b.dim)
 	accepted := 0
 	for range volumeTrial {
@@ -325,7 +346,7 @@ func (b *bound) measure(rng *rand.Rand) {
 			accepted++
 		}
 	}
-	b.logVolume = total + math.Log((float64(accepted)+0.5)/volumeTrial)
+	b.logVolume = totalVolume(b.ellipsoids) + math.Log((float64(accepted)+0.5)/volumeTrial)
 }
 
 // propose writes one candidate to x, frame coordinates, with z as scratch, and

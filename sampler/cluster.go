@@ -7,8 +7,8 @@ import (
 )
 
 const (
-	// tightEnough is the log-volume over the expected prior volume below which
-	// a bound is good enough to look no further.
+	// tightEnough is the log-volume of ellipsoids that just hold the points, over
+	// the expected prior volume, below which they are good enough to look no further.
 	tightEnough = 0.2
 
 	// splitGain is how much log-volume each further ellipsoid has to save. It

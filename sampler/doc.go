@@ -24,7 +24,7 @@
 //  6. When little evidence remains, the live points are removed in turn, and the
 //     live number at every dead point follows from where the points were born
 //     (strands.go). evidence.go simulates the shrinkage of the volume: log-evidence,
-//     its error, the information and the weights are averages over 500 histories.
+//     its error, the information and the weights are averages over 160 histories.
 //  7. While a target is missed, growth.go plans by which live numbers it would be
 //     reached at least cost, and additions follow the levels of the likelihood
 //     found so far with strands of their own (path.go, ranges.go). merge.go joins

@@ -11,7 +11,7 @@ import (
 )
 
 const (
-	realisations = 500 // simulated shrinkage histories
+	realisations = 160 // simulated shrinkage histories
 	chunks       = 10  // they are spread over, whatever the number of workers
 )
 
@@ -43,7 +43,7 @@ func (o *Outcome) weigh(workers int) {
 	for i := range scale {
 		scale[i] = math.Exp(scale[i] - top)
 	}
-	var logZ, info [realisations]float64
+	var logZ [realisations]float64
 	var sums [chunks][]float64
 	var wg sync.WaitGroup
 	tickets := make(chan struct{}, max(workers, 1))
@@ -61,33 +61,32 @@ func (o *Outcome) weigh(workers int) {
 				v := math.Exp(start.draw(rng) - start.mean)
 				x[0] = v
 				for i, n := range inverse {
-					v *= expm(n - rng.ExpFloat64()*n)
+					t := n - rng.ExpFloat64()*n
+					if t < smallest || t > -smallest { // as expm, which is not inlined
+						v *= math.Exp(t)
+					} else {
+						v *= 1 + t*(1+t*(1./2+t*(1./6+t*(1./24+t*(1./120)))))
+					}
 					x[i+1] = v
 				}
-				var z, lz float64
+				var z float64
 				for i := range n {
 					p := scale[i] * shell(x, down, i)
 					w[i] = p
 					z += p
-					if p > 0 {
-						lz += p * o.LogLikelihood[i]
-					}
 				}
 				sum, share := sums[c], 1/z
 				for i, p := range w {
 					sum[i] += p * share
 				}
 				logZ[r] = math.Log(z) + top
-				info[r] = lz/z - logZ[r]
 			}
 		}()
 	}
 	wg.Wait()
 	o.LogEvidence, o.LogEvidenceError = meanSD(logZ[:])
-	o.Information, _ = meanSD(info[:])
-	o.FormulaError = math.Sqrt(max(o.Information, 0) / float64(o.LivePoints))
 	o.LogWeight = make([]float64, n)
-	var square float64
+	var square, logL float64
 	for i := range n {
 		var p float64
 		for c := range chunks {
@@ -95,14 +94,23 @@ func (o *Outcome) weigh(workers int) {
 		}
 		o.LogWeight[i] = math.Log(p)
 		square += p * p
+		if p > 0 {
+			logL += p * o.LogLikelihood[i]
+		}
 	}
+	// The mean over the histories of Σ w ln L / Z - ln Z.
+	o.Information = logL - o.LogEvidence
+	o.FormulaError = math.Sqrt(max(o.Information, 0) / float64(o.LivePoints))
 	o.EffectiveSamples = 1 / square
 }
+
+// smallest is where the series of expm ends: its next term is 0.006⁶/720 = 6e-17.
+const smallest = -0.006
 
 // expm is exp(t), by its series where t is so small that the next term is below
 // rounding, as nearly all shrinkages are.
 func expm(t float64) float64 {
-	if math.Abs(t) > 0.004 { // 0.004⁶/720 is 6e-18
+	if math.Abs(t) > -smallest {
 		return math.Exp(t)
 	}
 	return 1 + t*(1+t*(1./2+t*(1./6+t*(1./24+t*(1./120)))))

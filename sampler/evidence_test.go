@@ -34,7 +34,7 @@ func TestEvidenceAgainstExactMoments(t *testing.T) {
 	z, z2 := moments(o.LogLikelihood, n)
 	relative := math.Sqrt(z2/(z*z) - 1) // sd of Z over its mean
 	// The midpoint volumes lie half a step, 1/2n, above those of the moments;
-	// E ln Z lies half a variance below ln E Z. 500 histories know the mean to
+	// E ln Z lies half a variance below ln E Z. 160 histories know the mean to
 	// relative/√500 and the sd to 1/√1000 of itself: four of each.
 	want := math.Log(z) - 0.5*relative*relative
 	if d := o.LogEvidence - want; math.Abs(d) > 4*relative/math.Sqrt(realisations)+1.0/n {

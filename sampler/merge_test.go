@@ -60,7 +60,7 @@ func TestMergedRunsAreOneRun(t *testing.T) {
 	if z := (m.LogEvidence - p.want) / m.LogEvidenceError; math.Abs(z) > 4 {
 		t.Errorf("z = %g", z)
 	}
-	// Half of the error of a part; sds of 500 histories are good to 3 %, and
+	// Half of the error of a part; sds of 160 histories are good to 6 %, and
 	// the information differs between parts.
 	if r := 2 * m.LogEvidenceError / parts[0].LogEvidenceError; math.Abs(r-1) > 0.25 {
 		t.Errorf("error falls from %g to %g, want half", parts[0].LogEvidenceError, m.LogEvidenceError)

@@ -14,6 +14,10 @@ import (
 // number, where most of the prior has zero likelihood.
 const priorPatience = 5000
 
+// usualDepth is the compression, in nats, that memory for dead points is set
+// aside for at first.
+const usualDepth = 32
+
 // begin draws from the prior until there are as many points of non-zero
 // likelihood as the run has live points there, or patience ends.
 func (r *runner) begin(ctx context.Context) error {
@@ -79,6 +83,7 @@ func (r *runner) begin(ctx context.Context) error {
 		order = append(order, i)
 	}
 	slices.SortStableFunc(order, func(a, b int) int { return cmp.Compare(l[a], l[b]) })
+	r.flat = make([]float64, 0, usualDepth*n*r.dim)
 	for _, i := range order {
 		r.u = append(r.u, u[i*r.dim:(i+1)*r.dim]...)
 		r.l = append(r.l, l[i])

@@ -56,22 +56,22 @@ type partState struct {
 
 // runnerState is a runner between two steps. Its points in flight are drawn anew.
 type runnerState struct {
-	Addition                  bool // it follows the next planned one
-	U, L, Birth               []float64
-	Strand, Freed             []int32
-	Threshold                 float64
-	Strands                   int32
-	Flights                   []flightState
-	Batches                   uint64
-	Level                     int
-	Ending, Begun             bool
-	Out                       partState // LiveCount and order are for later
-	Phase                     []Phase   // by method
-	LogX, LogZ, Moment        float64
-	Bounds                    []boundState // that the runner and its flights use
-	Bound                     int          // its own among them, from 1, or 0
-	BoundX, SliceCalls, Share float64
-	Memory                    memoryState
+	Addition                           bool // it follows the next planned one
+	U, L, Birth                        []float64
+	Strand, Freed                      []int32
+	Threshold                          float64
+	Strands                            int32
+	Flights                            []flightState
+	Batches                            uint64
+	Level                              int
+	Ending, Begun                      bool
+	Out                                partState // LiveCount and order are for later
+	Phase                              []Phase   // by method
+	LogX, LogZ, Moment                 float64
+	Bounds                             []boundState // that the runner and its flights use
+	Bound                              int          // its own among them, from 1, or 0
+	BoundX, ShrunkX, SliceCalls, Share float64
+	Memory                             memoryState
 }
 
 // flightState is a batch to be drawn again.
@@ -203,7 +203,7 @@ func (r *runner) keep() *runnerState {
 		Addition: r.path != nil, U: r.u, L: r.l, Birth: r.birth, Strand: r.strand, Freed: r.freed, Threshold: r.threshold, Strands: r.strands,
 		Batches: r.batches, Level: r.level, Ending: r.ending, Begun: r.begun,
 		Out: r.out.keep(), Phase: r.phase[:], LogX: r.logX, LogZ: r.logZ, Moment: r.moment,
-		BoundX: r.boundX, SliceCalls: r.sliceCalls, Share: r.part,
+		BoundX: r.boundX, ShrunkX: r.shrunkX, SliceCalls: r.sliceCalls, Share: r.part,
 		Memory: memoryState{r.memory.steps, r.memory.least, r.memory.weight, r.memory.peak, r.memory.correlation},
 	}
 	k.Out.Flat, k.Out.Ranks, k.Out.RankMethods = r.flat, r.ranks.u, r.ranks.by
@@ -251,7 +251,7 @@ func (g *growing) restore(k *runnerState) error {
 	r.out = k.Out.outcome(g.set, r.dim)
 	copy(r.phase[:], k.Phase)
 	r.logX, r.logZ, r.moment = k.LogX, k.LogZ, k.Moment
-	r.boundX, r.sliceCalls, r.part = k.BoundX, k.SliceCalls, k.Share
+	r.boundX, r.shrunkX, r.sliceCalls, r.part = k.BoundX, k.ShrunkX, k.SliceCalls, k.Share
 	m := k.Memory
 	r.memory = memory{steps: m.Steps, least: m.Least, weight: m.Weight, peak: m.Peak, correlation: m.Correlation}
 	bounds := []*bound{nil}

@@ -11,7 +11,8 @@ type trial struct {
 	partition
 	way        int         // index in ways
 	ellipsoids []ellipsoid // nil if it failed
-	volume     float64     // log, as fit returns it
+	plain      float64     // log of their total volume
+	volume     float64     // the same once they are grown, with splitGain for each added
 }
 
 // try fits each number of clusters, every other one in the metric of the bound
@@ -54,8 +55,7 @@ func (b *bound) otherWays(t trial, rng *rand.Rand) trial {
 	return best
 }
 
-// fit returns the ellipsoids of a partition and the log of their total volume,
-// with splitGain for each added. They are grown by one round of
+// fit finds the ellipsoids of a partition. They are grown by one round of
 // cross-validation in the volume, but not yet in themselves.
 func (b *bound) fit(p partition, way int, rng *rand.Rand) trial {
 	t := &bound{dim: b.dim, points: b.points, pooled: p.pooled}
@@ -68,7 +68,8 @@ func (b *bound) fit(p partition, way int, rng *rand.Rand) trial {
 		}
 		t.ellipsoids = append(t.ellipsoids, e)
 	}
-	plain := append([]ellipsoid(nil), t.ellipsoids...)
+	out := trial{partition: p, way: way, ellipsoids: append([]ellipsoid(nil), t.ellipsoids...), plain: totalVolume(t.ellipsoids)}
 	t.enlarge(1, rng)
-	return trial{p, way, plain, totalVolume(t.ellipsoids) + splitGain*float64(len(plain))}
+	out.volume = totalVolume(t.ellipsoids) + splitGain*float64(len(t.ellipsoids))
+	return out
 }
