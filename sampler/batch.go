@@ -19,8 +19,8 @@ const (
 
 	// shrinkStep is the compression, in nats, after which the ellipsoids are drawn
 	// in; until then they are too large by at most this much. They are fitted anew
-	// after rebuildStep, or twice that where there is only one.
-	shrinkStep, rebuildStep = 0.1, 0.3
+	// after rebuildStep, or fitsStep where one is all that is needed.
+	shrinkStep, rebuildStep, fitsStep = 0.1, 0.15, 0.6
 
 	// slotPatience is how many times the expected calls a slot spends on
 	// rejection before it turns to slices: e^-40 is never by chance.
@@ -254,8 +254,8 @@ func (r *runner) prepare(st *stage) {
 
 // lasts is the compression, in nats, after which a bound is fitted anew.
 func (b *bound) lasts() float64 {
-	if b.clusters == 1 {
-		return 2 * rebuildStep
+	if b.fits {
+		return fitsStep
 	}
 	return rebuildStep
 }

@@ -10,10 +10,9 @@ const (
 	volumeTrial = 1000 // draws that measure the volume of the union
 
 	// Many numbers of clusters are tried anew after ladderStep of compression,
-	// twice that after each time that none was better by ladderGain than the last, and at
-	// once when the bound has become worse by ladderWorse. In nats.
+	// twice that after each time that none was better than the last, and at once
+	// when the bound has become worse by ladderWorse. In nats.
 	ladderStep, ladderMost, ladderWorse = 0.5, 4, 0.2
-	ladderGain, ladderGiveUp            = 0.05, 1
 
 	// foresight times the excess of the factor found by cross-validation over 1
 	// is what the squared radius grows by. 1 costs 5 to 10 % more calls in few
@@ -55,6 +54,7 @@ type bound struct {
 	pooled     scatter   // covariance within the clusters
 	clusters   int       // that were asked for
 	way        int       // index in ways of the shapes
+	fits       bool      // one ellipsoid is as tight as can be
 	ellipsoids []ellipsoid
 	tight      []float64 // squared radii that just held the points
 	cumulative []float64 // running sum of the ellipsoids' shares of the volume
@@ -104,7 +104,9 @@ func newBoundAfter(recent, points []float64, dim int, logX float64, periodic, re
 	}
 	// loose tells whether another partition could be better: for a region that is
 	// an ellipsoid, the one that just holds the points is no larger than it should.
-	loose := func() bool { return best.plain > logX+tightEnough }
+	// How large that is, is known as well as the shrinkage so far.
+	enough := logX + tightEnough + 1.5*math.Sqrt(max(0, -logX)/float64(n))
+	loose := func() bool { return best.plain > enough }
 	// due tells whether all that was not best before may be tried anew.
 	due := func() bool {
 		excess := best.volume - logX
@@ -113,47 +115,35 @@ func newBoundAfter(recent, points []float64, dim int, logX float64, periodic, re
 	if due() {
 		best = b.otherWays(best, rng)
 	}
-	// try returns the least volume of several numbers of clusters.
-	try := func(ks []int, base int) float64 {
+	try := func(ks []int, base int) {
 		way := best.way
 		if last != nil && last.clusters > 1 && len(recent) > 0 {
 			way = last.way
 		}
-		least := math.Inf(1)
 		for _, t := range b.try(ks, one.pooled, way, last, workers, func(i int) *rand.Rand { return stream(base + i) }) {
-			if t.ellipsoids == nil {
-				continue
-			}
-			least = min(least, t.volume)
-			if t.volume < best.volume {
+			if t.ellipsoids != nil && t.volume < best.volume {
 				best = t
 			}
 		}
-		return least
 	}
 	if last != nil && last.clusters > 1 && loose() {
 		try(neighbours(n, dim, last.clusters), 1)
 	}
 	if due() {
 		before := best.volume
-		base := 1 + len(neighbours(n, dim, n))
-		// Two at a time. If both are far from the best, more would be further.
-		for i, ks := range slices.Collect(slices.Chunk(ladder(n, dim), 2)) {
-			if try(ks, base+2*i) > best.volume+ladderGiveUp {
-				break
-			}
-		}
+		try(ladder(n, dim), 1+len(neighbours(n, dim, n)))
 		if best.k > 1 {
 			best = b.otherWays(best, rng)
 		}
 		b.ladderX, b.ladderExcess = logX, best.volume-logX
-		if best.volume < before-ladderGain {
+		if best.volume < before {
 			b.ladderWait = ladderStep
 		} else {
 			b.ladderWait = min(2*b.ladderWait, ladderMost)
 		}
 	}
 	b.ellipsoids, b.pooled, b.clusters, b.way = best.ellipsoids, best.pooled, best.k, best.way
+	b.fits = best.k == 1 && !loose()
 	for c := range b.ellipsoids {
 		b.tight = append(b.tight, b.ellipsoids[c].radius2)
 	}

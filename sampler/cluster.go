@@ -105,8 +105,10 @@ func kmeans(y []float64, dim int, of []int, centres []float64) {
 	for round := range kmeansRounds {
 		changed := false
 		for i := range of {
+			// From the centre it had: nearly all others are then soon seen to be further.
 			row := y[i*dim : (i+1)*dim]
-			best, least := 0, math.Inf(1)
+			best := of[i]
+			least := gap2(row, centres[best*dim:(best+1)*dim])
 			for c := 0; c < len(centres); c += dim {
 				var d float64
 				for k, m := range centres[c : c+dim] {

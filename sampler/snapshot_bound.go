@@ -7,6 +7,7 @@ type boundState struct {
 	Points, Pooled                               []float64
 	Dim, Clusters, Way                           int
 	Ellipsoids                                   []ellipsoidState
+	Fits                                         bool
 	Tight, Cumulative, Weight                    []float64
 	LogVolume, LadderX, LadderExcess, LadderWait float64
 	LiftX, LiftWait                              float64
@@ -21,7 +22,7 @@ type ellipsoidState struct {
 
 func (b *bound) keep() boundState {
 	k := boundState{
-		Shift: b.frame.shift, Wall: b.frame.wall, Points: b.points, Pooled: b.pooled.a, Dim: b.dim, Clusters: b.clusters, Way: b.way,
+		Shift: b.frame.shift, Wall: b.frame.wall, Points: b.points, Pooled: b.pooled.a, Dim: b.dim, Clusters: b.clusters, Way: b.way, Fits: b.fits,
 		Tight: b.tight, Cumulative: b.cumulative, Weight: b.weight, LogVolume: b.logVolume, Mode: b.mode,
 		LadderX: b.ladderX, LadderExcess: b.ladderExcess, LadderWait: b.ladderWait,
 		LiftX: b.liftX, LiftWait: b.liftWait,
@@ -36,7 +37,7 @@ func (b *bound) keep() boundState {
 func (k *boundState) bound(s Settings) *bound {
 	b := &bound{
 		frame: frame{shift: k.Shift, periodic: s.Periodic, wall: k.Wall}, points: k.Points, pooled: scatter{k.Dim, k.Pooled},
-		dim: k.Dim, clusters: k.Clusters, way: k.Way, tight: k.Tight, cumulative: k.Cumulative, weight: k.Weight, logVolume: k.LogVolume, mode: k.Mode,
+		dim: k.Dim, clusters: k.Clusters, way: k.Way, fits: k.Fits, tight: k.Tight, cumulative: k.Cumulative, weight: k.Weight, logVolume: k.LogVolume, mode: k.Mode,
 		ladderX: k.LadderX, ladderExcess: k.LadderExcess, ladderWait: k.LadderWait,
 		liftX: k.LiftX, liftWait: k.LiftWait,
 	}
