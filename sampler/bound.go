@@ -15,9 +15,9 @@ const (
 	ladderStep, ladderMost, ladderWorse = 0.5, 4, 0.2
 
 	// foresight times the excess of the factor found by cross-validation over 1
-	// is what the squared radius grows by. 1 costs 5 to 10 % more calls in few
-	// dimensions and misses a third less (TestBoundCoversUnseenPoints). The share
-	// left outside, times the information, is the bias of the log-evidence.
+	// is what the squared radius grows by. More costs calls and misses less
+	// (TestBoundCoversUnseenPoints). The share left outside, times the information,
+	// is the bias of the log-evidence.
 	foresight = 0.85
 
 	// margin is the number of points whose volume is added around each ellipsoid
@@ -28,9 +28,8 @@ const (
 	// miss about C/n together. So each grows beyond that by tail·ln C times the
 	// mean log-excess of its tailMost largest squared distances over the next,
 	// tail being tailLeast + tailPerDim·dim. Without, a mixture of four skewed
-	// modes in ten dimensions had 4/437 missed where the modes part, which raised
-	// its log-evidence by half an error; with these it is about 1/437, at
-	// twice the calls.
+	// modes in ten dimensions (log-gamma in validation/evidence) loses volume where
+	// the modes part, and its log-evidence is high by half an error.
 	tailLeast, tailPerDim = 0.3, 0.03
 	tailMost              = 10
 
@@ -38,8 +37,7 @@ const (
 	// outside the region, where a bound misses something if it misses anything,
 	// and neither shapes nor radii were made to hold them: each ellipsoid grows
 	// to hold those near it, which have less than edgeMost times its squared
-	// radius. A box in six dimensions is missed by 0.08/437 instead of 0.53/437,
-	// for 15 % more volume.
+	// radius. The corners of a box are missed less for it.
 	edgeShare = 0.1
 	edgeMost  = 1.5
 )

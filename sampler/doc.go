@@ -9,10 +9,14 @@
 //  2. begin draws the first live points from the prior (prior.go). Where the
 //     likelihood is zero it draws on; how often it was zero is the first shrinkage.
 //  3. next takes the n/32 lowest live points (and all that tie with the last of
-//     them) away and sends a flight of replacements (batch.go, flight.go). prepare
-//     chooses how to draw them: from the whole cube, from a union of ellipsoids
-//     (bound.go, cluster.go, ellipsoid.go, frame.go) or by slices (slice.go,
-//     memory.go), whichever is expected to take fewest calls.
+//     them) away and sends a flight of replacements (runner.go, batch.go,
+//     flight.go). prepare chooses how to draw them: from the whole cube, from a union
+//     of ellipsoids or by slices (slice.go, memory.go), whichever is expected to
+//     take fewest calls. The ellipsoids (bound.go, ellipsoid.go) are fitted to
+//     clusters of the live points (cluster.go, trial.go), with shapes that points
+//     removed lately help to know (shape.go), and sizes by cross-validation
+//     (crossval.go), where periodic dimensions are cut open (frame.go) and
+//     reflective ones unfolded (lift.go).
 //  4. The crew draws the slots of up to four flights, oldest first (crew.go,
 //     draw.go). Each slot has a random stream of its own, keyed by part, batch and
 //     slot, and sees only the state when its flight was sent; flights are taken in

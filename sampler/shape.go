@@ -29,9 +29,9 @@ type way struct {
 }
 
 // ways are tried in turn; the least volume after cross-validation tells which is
-// used. The covariance in 32 dimensions is badly known from 437 points: at 500
-// live points a Gaussian takes 13 calls per point, and without removed points,
-// by slices, 290. Where a region changes its shape as it shrinks, they are no
+// used. The covariance in 32 dimensions is badly known from a few hundred points: a
+// Gaussian takes 20 times as many calls without removed points, by slices. Where a
+// region changes its shape as it shrinks, they are no
 // help. Unscaled, they make the least radius of fitShaped larger, which small
 // clusters gain from: it holds unseen points without any growth.
 var ways = []way{
