@@ -87,12 +87,7 @@ func (r *runner) land() error {
 		r.sliceCalls += 0.2 * (calls - r.sliceCalls)
 		r.sliceCalls *= r.memory.learn(st, &f.fresh)
 	}
-	rng := random.New(r.set.Seed, "rank", r.run, f.batch)
-	r.ranks.begin(st.l)
-	for _, l := range f.fresh.l {
-		r.ranks.enter(l, rng.Rand)
-	}
-	r.ranks.mark(st.method)
+	r.rank(f)
 	r.insert(f)
 	r.pending -= count
 	r.flights = append(r.flights[:0], r.flights[1:]...)
@@ -100,6 +95,25 @@ func (r *runner) land() error {
 	r.report(st.method, 1/calls)
 	r.spare = append(r.spare, f)
 	return nil
+}
+
+// rank notes the ranks of a flight's points among all live points that are known,
+// as the points enter one after another. Those that the threshold has passed in
+// the meantime have none: the others are uniform above it, as those they are
+// compared with, whichever flights landed before.
+func (r *runner) rank(f *flight) {
+	rng := random.New(r.set.Seed, "rank", r.run, f.batch)
+	r.stagingL = append(r.stagingL[:0], r.l...)
+	if r.path != nil {
+		r.stagingL = r.beside.likelihoods(r.threshold, r.stagingL)
+	}
+	r.ranks.begin(r.stagingL)
+	for _, l := range f.fresh.l {
+		if l > r.threshold {
+			r.ranks.enter(l, rng.Rand)
+		}
+	}
+	r.ranks.mark(f.stage.method)
 }
 
 // prepare chooses how a batch is drawn.

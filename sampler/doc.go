@@ -23,7 +23,7 @@
 //     by their order. So the bits do not depend on the workers, and a slow call
 //     holds up nobody until four flights wait for it.
 //  5. land takes a flight in; rank.go notes where its points enter among those
-//     they were drawn with: were the draws fair, these ranks are uniform. A
+//     known: were the draws fair, these ranks are uniform. A
 //     point that lands below the threshold reached meanwhile is dead at once.
 //  6. When little evidence remains, the live points are removed in turn, and the
 //     live number at every dead point follows from where the points were born

@@ -39,9 +39,9 @@ func newCompanions(parts []*Outcome) *companions {
 	return c
 }
 
-// above appends the live points above the threshold to u and l, thinned evenly
-// in their likelihoods to about most. Thresholds must not fall from call to call.
-func (c *companions) above(threshold float64, most int, u, l []float64) ([]float64, []float64) {
+// rise goes to a threshold and returns how many are live above it. Thresholds must
+// not fall from call to call.
+func (c *companions) rise(threshold float64) int {
 	total := 0
 	for p, o := range c.parts {
 		keep := c.alive[p][:0]
@@ -59,6 +59,13 @@ func (c *companions) above(threshold float64, most int, u, l []float64) ([]float
 		c.alive[p] = keep
 		total += len(keep)
 	}
+	return total
+}
+
+// above appends the live points above the threshold to u and l, thinned evenly
+// in their likelihoods to about most.
+func (c *companions) above(threshold float64, most int, u, l []float64) ([]float64, []float64) {
+	total := c.rise(threshold)
 	for p, o := range c.parts {
 		keep := c.alive[p]
 		n := len(keep)
@@ -72,6 +79,18 @@ func (c *companions) above(threshold float64, most int, u, l []float64) ([]float
 		}
 	}
 	return u, l
+}
+
+// likelihoods appends those of all live points above the threshold to l: thinned
+// ones would not be like a new point.
+func (c *companions) likelihoods(threshold float64, l []float64) []float64 {
+	c.rise(threshold)
+	for p, o := range c.parts {
+		for _, i := range c.alive[p] {
+			l = append(l, o.LogLikelihood[i])
+		}
+	}
+	return l
 }
 
 // below returns up to n points of the first run that died last at or below the

@@ -267,7 +267,7 @@ func (g *growing) restore(k *runnerState) error {
 		r.pending += len(f.Strand)
 	}
 	if p != nil && r.begun {
-		r.beside.above(r.threshold, 0, nil, nil)
+		r.beside.rise(r.threshold)
 	}
 	g.current = r
 	return nil
