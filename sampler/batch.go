@@ -153,7 +153,7 @@ func (b *bound) lasts() float64 {
 // recent returns the points that were removed last, as many as help n live ones.
 func (r *runner) recent(n int) []float64 {
 	if r.path != nil {
-		return r.beside.below(r.threshold, lookBack(r.dim, r.set.LivePoints))
+		return r.beside.below(r.threshold, lookBack(r.dim, n))
 	}
 	return r.flat[max(0, len(r.flat)-lookBack(r.dim, n)*r.dim):]
 }

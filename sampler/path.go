@@ -93,21 +93,33 @@ func (c *companions) likelihoods(threshold float64, l []float64) []float64 {
 	return l
 }
 
-// below returns up to n points of the first run that died last at or below the
-// threshold, in order.
+// below returns the n points that died last at or below the threshold, in order.
 func (c *companions) below(threshold float64, n int) []float64 {
-	o := c.parts[0]
-	end, _ := slices.BinarySearchFunc(o.LogLikelihood, threshold, func(l, t float64) int {
-		if l <= t {
-			return -1
+	type place struct {
+		l       float64
+		part, i int
+	}
+	var last []place
+	for p, o := range c.parts {
+		end, _ := slices.BinarySearchFunc(o.LogLikelihood, threshold, upTo)
+		for i := max(0, end-n); i < end; i++ {
+			last = append(last, place{o.LogLikelihood[i], p, i})
 		}
-		return 1
-	})
+	}
+	slices.SortStableFunc(last, func(a, b place) int { return cmp.Compare(a.l, b.l) })
 	var u []float64
-	for _, p := range o.Points[max(0, end-n):end] {
-		u = append(u, p...)
+	for _, at := range last[max(0, len(last)-n):] {
+		u = append(u, c.parts[at.part].Points[at.i]...)
 	}
 	return u
+}
+
+// upTo finds the first value above a threshold by binary search.
+func upTo(l, threshold float64) int {
+	if l <= threshold {
+		return -1
+	}
+	return 1
 }
 
 // follow goes to the next level of the path.
@@ -118,12 +130,7 @@ func (r *runner) follow() {
 		return
 	}
 	r.threshold = p.level[r.level]
-	k, _ := slices.BinarySearchFunc(r.l, r.threshold, func(l, t float64) int {
-		if l <= t {
-			return -1
-		}
-		return 1
-	})
+	k, _ := slices.BinarySearchFunc(r.l, r.threshold, upTo)
 	r.bury(k)
 	r.logX = p.logX[r.level]
 	count := p.want[r.level] - len(r.l) - r.pending
