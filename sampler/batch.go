@@ -10,7 +10,7 @@ import (
 )
 
 const (
-	// A batch removes LivePoints/BatchShare live points, and up to InFlight
+	// A batch removes a share 1/BatchShare of the known live points, and up to InFlight
 	// batches of replacements are drawn at the same time: a slow likelihood call
 	// holds up nobody until that many batches wait for it. The points in flight
 	// are not known yet, so more of them leave fewer to fit ellipsoids to.
@@ -105,7 +105,7 @@ func (r *runner) rank(f *flight) {
 	rng := random.New(r.set.Seed, "rank", r.run, f.batch)
 	r.stagingL = append(r.stagingL[:0], r.l...)
 	if r.path != nil {
-		r.stagingL = r.beside.likelihoods(r.threshold, r.stagingL)
+		r.stagingL = r.beside.likelihoods(r.threshold, r.set.companions(), r.stagingL)
 	}
 	r.ranks.begin(r.stagingL)
 	for _, l := range f.fresh.l {

@@ -129,7 +129,7 @@ func newBoundAfter(recent, points []float64, dim int, logX float64, periodic, re
 	}
 	if due() {
 		before := best.volume
-		try(ladder(n, dim), 1+len(neighbours(n, dim, n)))
+		try(ladder(n, dim), 1+mostNeighbours)
 		if best.k > 1 {
 			best = b.otherWays(best, rng)
 		}

@@ -16,7 +16,9 @@ const (
 	splitGain = 0.01
 
 	kmeansRounds = 12
-	metricRounds = 2
+
+	mostNeighbours = 3 // that neighbours lists
+	metricRounds   = 2
 )
 
 // partition is an assignment of points to k clusters.

@@ -68,13 +68,13 @@ func (c *crew) wait(f *flight) error {
 }
 
 func (c *crew) serve(w *worker) {
-	c.mu.Lock()
-	defer c.mu.Unlock()
+	c.mu.Lock() // not held while a slot is drawn, so a panic there shows as it is
 	for {
 		for len(c.flights) == 0 && !c.stopped {
 			c.work.Wait()
 		}
 		if c.stopped || c.ctx.Err() != nil {
+			c.mu.Unlock()
 			return
 		}
 		f := c.flights[0]

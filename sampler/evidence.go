@@ -154,6 +154,16 @@ func (o *Outcome) priorShrinkage() shrinkage {
 	return s
 }
 
+// zeroVariance is the variance of ln of the volume of non-zero likelihood, to
+// first order.
+func (o *Outcome) zeroVariance() float64 {
+	s := o.priorShrinkage()
+	if s.b == 0 {
+		return 0
+	}
+	return s.b / (s.a * (s.a + s.b))
+}
+
 func (s shrinkage) draw(rng *random.Rand) float64 {
 	if s.b == 0 {
 		return 0

@@ -27,8 +27,7 @@ func (s Settings) reached(o *Outcome) bool {
 }
 
 // additions plans the strands that an outcome needs for the targets to hold: for
-// one runner after another, at most chunk strands each. limited says that
-// MaxGrowth does not let them.
+// one runner after another. limited says that MaxGrowth does not let them.
 //
 // With n the live number, P the posterior density in ln X and G the probability
 // above X, the variance of ln Z is ∫ (G-P)²/n d(-ln X) and the effective number of
@@ -40,7 +39,7 @@ func (s Settings) additions(o *Outcome) (paths []*path, limited bool) {
 	g := o.ranges(growthStep)
 	n := len(g.level)
 	want := slices.Clone(g.live)
-	most := float64(s.MaxGrowth * s.LivePoints)
+	most := float64(s.MaxGrowth) * float64(s.LivePoints)
 	// raise lifts want to a multiple of shape until the sum of value, which is now
 	// with the live numbers there are, falls to goal.
 	raise := func(shape, value []float64, now, goal float64) {
@@ -73,6 +72,8 @@ func (s Settings) additions(o *Outcome) (paths []*path, limited bool) {
 		predicted(hi)
 	}
 	if e := s.EvidenceError; e > 0 && o.LogEvidenceError > e {
+		// The zeros among the first draws fade with the strands that begin there.
+		g.variance[0] += o.zeroVariance()
 		raise(g.leverage(), g.variance, o.LogEvidenceError*o.LogEvidenceError, e*e*(1-beyond))
 	}
 	if e := s.PosteriorSamples; e > 0 && o.EffectiveSamples < e {
@@ -87,15 +88,17 @@ func (s Settings) additions(o *Outcome) (paths []*path, limited bool) {
 		}
 	}
 	chunk := max(s.LivePoints, DefaultLivePoints)
-	for done := 0; done < peak; done += chunk {
-		paths = append(paths, s.path(g, more, done, chunk))
+	count := (peak + chunk - 1) / chunk
+	for i := range count {
+		paths = append(paths, s.path(g, more, i, count))
 	}
 	return paths, limited
 }
 
-// path makes the addition of strands number done to done+chunk at each level.
-func (s Settings) path(g *ranges, more []int, done, chunk int) *path {
-	of := func(j int) int { return max(0, min(chunk, more[j]-done)) }
+// path makes addition number i of count: it has its share of the strands at each
+// level, so that all have the same rise and fall.
+func (s Settings) path(g *ranges, more []int, i, count int) *path {
+	of := func(j int) int { return more[j]*(i+1)/count - more[j]*i/count }
 	p := &path{first: of(0)}
 	peak := 0
 	end := 0

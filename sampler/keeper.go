@@ -19,5 +19,5 @@ type ResumeError struct {
 }
 
 func (e *ResumeError) Error() string {
-	return fmt.Sprintf("sampler: the kept state is of another run: its %s is %s, want %s", e.What, e.Got, e.Want)
+	return fmt.Sprintf("sampler: the kept state does not fit: its %s is %s, want %s", e.What, e.Got, e.Want)
 }

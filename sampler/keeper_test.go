@@ -1,7 +1,9 @@
 package sampler
 
 import (
+	"bytes"
 	"context"
+	"encoding/gob"
 	"errors"
 	"reflect"
 	"strings"
@@ -173,6 +175,31 @@ func TestForeignStatesAreRefused(t *testing.T) {
 	}
 	if _, err := Run(context.Background(), gaussian(4, 0).target, s); err == nil || !strings.Contains(err.Error(), "dimensions") {
 		t.Errorf("a state of 3 dimensions in 4: error %v", err)
+	}
+	kept, _ := s.Keeper.Load()
+	for name, spoil := range map[string]func(*state){
+		"part short of likelihoods": func(s *state) { s.Parts[0].LogLikelihood = s.Parts[0].LogLikelihood[1:] },
+		"strand below zero":         func(s *state) { s.Parts[0].Strand[0] = -3 },
+		"method unknown":            func(s *state) { s.Parts[0].RankMethods[0] = 77 },
+		"merged too many":           func(s *state) { s.Merged = 9 },
+		"one setting more":          func(s *state) { s.Settings = append(s.Settings, setting{"x", "y"}) },
+		"addition to nothing":       func(s *state) { s.Parts, s.Merged, s.Runner = nil, 0, &runnerState{Addition: true} },
+		"runner of no phases":       func(s *state) { s.Runner = &runnerState{Addition: true} },
+	} {
+		var odd state
+		if err := gob.NewDecoder(bytes.NewReader(kept)).Decode(&odd); err != nil {
+			t.Fatal(err)
+		}
+		spoil(&odd)
+		var b bytes.Buffer
+		if err := gob.NewEncoder(&b).Encode(&odd); err != nil {
+			t.Fatal(err)
+		}
+		s.Keeper = &memoryKeeper{states: [][]byte{b.Bytes()}}
+		var refused *ResumeError
+		if _, err := Run(context.Background(), p.target, s); !errors.As(err, &refused) {
+			t.Errorf("%s: error %v, want a *ResumeError", name, err)
+		}
 	}
 	for _, bad := range [][]byte{{}, []byte("no state"), {1, 2, 3}} {
 		s.Keeper = &memoryKeeper{states: [][]byte{bad}}

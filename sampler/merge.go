@@ -18,14 +18,16 @@ func merge(outcomes []*Outcome, workers int) (*Outcome, error) {
 	if len(outcomes) == 0 {
 		return nil, fmt.Errorf("sampler: Merge of 0 outcomes, want at least 1")
 	}
+	for i, o := range outcomes {
+		if o == nil || len(o.Points) == 0 {
+			return nil, fmt.Errorf("sampler: Merge: outcome %d has no points", i)
+		}
+	}
 	first := outcomes[0]
 	m := &Outcome{seed: first.seed, periodic: first.periodic}
 	total := 0
 	strands := joinStrands(outcomes)
 	for i, o := range outcomes {
-		if o == nil || len(o.Points) == 0 {
-			return nil, fmt.Errorf("sampler: Merge: outcome %d has no points", i)
-		}
 		if o.dim() != first.dim() {
 			return nil, fmt.Errorf("sampler: Merge: outcome %d has %d dimensions, want %d as the first", i, o.dim(), first.dim())
 		}

@@ -10,7 +10,8 @@ import (
 type Status int
 
 const (
-	Converged   Status = iota // the remaining evidence or the wanted error was reached
+	Converged   Status = iota // little evidence remains, and the targets hold
+	GrowthLimit               // Settings.MaxGrowth was reached short of a target
 	CallLimit                 // Settings.MaxCalls was reached
 	Interrupted               // the context was cancelled
 )
@@ -19,6 +20,8 @@ func (s Status) String() string {
 	switch s {
 	case Converged:
 		return "converged"
+	case GrowthLimit:
+		return "growth limit"
 	case CallLimit:
 		return "call limit"
 	case Interrupted:
@@ -68,7 +71,7 @@ type Outcome struct {
 
 	Calls      int64 // likelihood calls
 	Iterations int   // batches
-	LivePoints int   // summed over runs
+	LivePoints int   // that began at the prior, summed over parts
 	Runs       int
 
 	// PriorDraws counts the draws from the prior that made the first live
@@ -98,7 +101,8 @@ type Outcome struct {
 	Warnings []string
 	Verdict  string // "sound", or what is doubtful and what to change
 
-	notes     []string // warnings of the runs themselves, without judge's
+	notes     []string // warnings of the parts themselves, without judge's
+	missed    []string // targets that do not hold, and why
 	seed      uint64
 	openEnded bool // the prior draws went on until enough were above zero
 	ranks     []float64
@@ -118,9 +122,9 @@ func (o *Outcome) note(format string, args ...any) {
 
 // judge sets the rank tests, the warnings and the verdict.
 func (o *Outcome) judge() {
-	o.Warnings = append([]string(nil), o.notes...)
+	o.Warnings = append(append([]string(nil), o.notes...), o.missed...)
 	o.testRanks()
-	var doubts []string
+	doubts := append([]string(nil), o.missed...)
 	if what := o.unfair(); what != "" {
 		doubts = append(doubts, what)
 	}

@@ -3,6 +3,8 @@ package sampler
 import (
 	"cmp"
 	"slices"
+
+	"knell/internal/random"
 )
 
 // path is what an addition to an outcome follows: levels of the likelihood, and
@@ -21,12 +23,13 @@ type path struct {
 // either.
 type companions struct {
 	parts []*Outcome
-	order [][]int32 // the points of each part as they were born
-	born  []int     // of order, up to the level
-	alive [][]int32 // live above the level, rising
+	lot   [][]float64 // of each point: where there are too many, the low ones stay
+	order [][]int32   // the points of each part as they were born
+	born  []int       // of order, up to the level
+	alive [][]int32   // live above the level, rising
 }
 
-func newCompanions(parts []*Outcome) *companions {
+func newCompanions(parts []*Outcome, rng *random.Rand) *companions {
 	c := &companions{parts: slices.Clone(parts), born: make([]int, len(parts)), alive: make([][]int32, len(parts))}
 	for _, o := range parts {
 		order := make([]int32, len(o.Birth))
@@ -35,6 +38,11 @@ func newCompanions(parts []*Outcome) *companions {
 		}
 		slices.SortStableFunc(order, func(a, b int32) int { return cmp.Compare(o.Birth[a], o.Birth[b]) })
 		c.order = append(c.order, order)
+		lot := make([]float64, len(o.Birth))
+		for i := range lot {
+			lot[i] = rng.Float64()
+		}
+		c.lot = append(c.lot, lot)
 	}
 	return c
 }
@@ -62,35 +70,31 @@ func (c *companions) rise(threshold float64) int {
 	return total
 }
 
-// above appends the live points above the threshold to u and l, thinned evenly
-// in their likelihoods to about most.
+// above appends about most of the live points above the threshold to u and l, by
+// lot: a choice by their order would not be like new points.
 func (c *companions) above(threshold float64, most int, u, l []float64) ([]float64, []float64) {
-	total := c.rise(threshold)
-	for p, o := range c.parts {
-		keep := c.alive[p]
-		n := len(keep)
-		if total > most {
-			n = n * most / total
-		}
-		for j := range n {
-			i := keep[j*len(keep)/n]
-			u = append(u, o.Points[i]...)
-			l = append(l, o.LogLikelihood[i])
-		}
-	}
+	c.choose(threshold, most, func(o *Outcome, i int32) {
+		u = append(u, o.Points[i]...)
+		l = append(l, o.LogLikelihood[i])
+	})
 	return u, l
 }
 
-// likelihoods appends those of all live points above the threshold to l: thinned
-// ones would not be like a new point.
-func (c *companions) likelihoods(threshold float64, l []float64) []float64 {
-	c.rise(threshold)
+// likelihoods appends those of the same points to l.
+func (c *companions) likelihoods(threshold float64, most int, l []float64) []float64 {
+	c.choose(threshold, most, func(o *Outcome, i int32) { l = append(l, o.LogLikelihood[i]) })
+	return l
+}
+
+func (c *companions) choose(threshold float64, most int, visit func(o *Outcome, i int32)) {
+	share := float64(most) / float64(max(1, c.rise(threshold)))
 	for p, o := range c.parts {
 		for _, i := range c.alive[p] {
-			l = append(l, o.LogLikelihood[i])
+			if c.lot[p][i] < share {
+				visit(o, i)
+			}
 		}
 	}
-	return l
 }
 
 // below returns the n points that died last at or below the threshold, in order.
@@ -122,6 +126,20 @@ func upTo(l, threshold float64) int {
 	return 1
 }
 
+// companions is the number of them that bounds are fitted to.
+func (s Settings) companions() int { return max(s.LivePoints, DefaultLivePoints) }
+
+// overdue reports whether the oldest flight has been in the air for as much
+// compression as InFlight levels. Where nothing needs replacing until it lands, it
+// would otherwise stay there to the end.
+func (r *runner) overdue() bool {
+	if r.path == nil || len(r.flights) == 0 || r.level == 0 {
+		return false
+	}
+	at, _ := slices.BinarySearch(r.path.level, r.flights[0].stage.threshold)
+	return r.path.logX[min(at, len(r.path.logX)-1)]-r.logX >= InFlight*growthStep*(1-1e-9)
+}
+
 // follow goes to the next level of the path.
 func (r *runner) follow() {
 	p := r.path
@@ -138,7 +156,7 @@ func (r *runner) follow() {
 	if count <= 0 {
 		return
 	}
-	u, l := r.beside.above(r.threshold, max(r.set.LivePoints, DefaultLivePoints), r.stagingU[:0], r.stagingL[:0])
+	u, l := r.beside.above(r.threshold, r.set.companions(), r.stagingU[:0], r.stagingL[:0])
 	u, l = append(u, r.u...), append(l, r.l...)
 	r.stagingU, r.stagingL = u, l
 	r.send(u, l, count)

@@ -18,72 +18,81 @@ const priorPatience = 5000
 // aside for at first.
 const usualDepth = 32
 
-// begin draws from the prior until there are as many points of non-zero
-// likelihood as the run has live points there, or patience ends.
+// begin draws a block from the prior, until there are as many points of non-zero
+// likelihood as the run has live points there, or patience ends. Before, the live
+// points stand in the order in which they were drawn.
 func (r *runner) begin(ctx context.Context) error {
-	n := r.out.LivePoints
-	if n == 0 {
-		return nil
-	}
-	limit := int64(n) * priorPatience
+	n, o := r.out.LivePoints, r.out
+	limit := int64(max(n, r.set.LivePoints)) * priorPatience
 	if m := r.set.MaxCalls; m != 0 {
 		limit = min(limit, max(m-r.before, int64(n)))
 	}
-	out := Outcome{}
-	var order []int
-	var u, l []float64
+	if len(r.l) == n || o.PriorDraws >= limit {
+		return r.sorted()
+	}
+	// As many draws again as it took so far, so that few are in vain.
+	block := int64(n)
+	if o.PriorDraws > 0 {
+		block = min(o.PriorDraws, int64(64*n))
+	}
+	block = min(block, limit-o.PriorDraws)
 	var fresh slots
-	block := n
-	for len(l) < n && out.PriorDraws < limit {
-		block = int(min(int64(block), limit-out.PriorDraws))
-		fresh.resize(block, r.dim)
-		base := uint64(out.PriorDraws)
-		err := r.of.pool.each(ctx, block, func(w *worker, slot int) error {
-			rng := random.New(r.set.Seed, "prior", r.run, base+uint64(slot))
-			w.calls = 0
-			for k := range w.cube {
-				w.cube[k] = rng.Float64()
-			}
-			v, err := w.at(w.cube)
-			copy(fresh.u[slot*r.dim:], w.cube)
-			fresh.l[slot] = v
-			return err
-		})
-		if err != nil {
-			return err
+	fresh.resize(int(block), r.dim)
+	base := uint64(o.PriorDraws)
+	err := r.of.pool.each(ctx, int(block), func(w *worker, slot int) error {
+		rng := random.New(r.set.Seed, "prior", r.run, base+uint64(slot))
+		w.calls = 0
+		for k := range w.cube {
+			w.cube[k] = rng.Float64()
 		}
-		out.Calls += int64(block)
-		for i, v := range fresh.l {
-			if len(l) == n {
-				break // draws beyond the last needed one do not count
-			}
-			out.PriorDraws++
-			if math.IsInf(v, -1) {
-				out.PriorZeros++
-				continue
-			}
-			u = append(u, fresh.u[i*r.dim:(i+1)*r.dim]...)
-			l = append(l, v)
+		v, err := w.at(w.cube)
+		copy(fresh.u[slot*r.dim:], w.cube)
+		fresh.l[slot] = v
+		return err
+	})
+	if err != nil {
+		return err
+	}
+	before := len(r.l)
+	for i, v := range fresh.l {
+		if len(r.l) == n {
+			break // draws beyond the last needed one do not count
 		}
-		// As many draws again as it took so far, so that few are in vain.
-		block = int(min(out.PriorDraws, int64(64*n)))
+		o.PriorDraws++
+		if math.IsInf(v, -1) {
+			o.PriorZeros++
+			continue
+		}
+		r.u = append(r.u, fresh.u[i*r.dim:(i+1)*r.dim]...)
+		r.l = append(r.l, v)
 	}
-	r.out.Calls, r.out.PriorDraws, r.out.PriorZeros = out.Calls, out.PriorDraws, out.PriorZeros
-	r.phase[fromPrior].Calls += out.Calls
-	r.phase[fromPrior].Points += int64(len(l))
-	if len(l) == 0 {
-		return fmt.Errorf("sampler: the likelihood is zero at all %d points drawn from the prior, want some above zero", r.out.PriorDraws)
+	o.Calls += block
+	r.phase[fromPrior].Calls += block
+	r.phase[fromPrior].Points += int64(len(r.l) - before)
+	return nil
+}
+
+// sorted ends the draws from the prior.
+func (r *runner) sorted() error {
+	o := r.out
+	if n := o.LivePoints; n > 0 {
+		if len(r.l) == 0 && r.path == nil {
+			return fmt.Errorf("sampler: the likelihood is zero at all %d points drawn from the prior, want some above zero", o.PriorDraws)
+		}
+		if len(r.l) < n/2 && r.path == nil {
+			o.note("only %d of %d draws from the prior have non-zero likelihood: narrow the prior", len(r.l), o.PriorDraws)
+		}
+		o.openEnded = len(r.l) == n
+		r.logX = o.priorShrinkage().mean
 	}
-	if len(l) < n/2 {
-		r.out.note("only %d of %d draws from the prior have non-zero likelihood: narrow the prior", len(l), r.out.PriorDraws)
+	order := make([]int, len(r.l))
+	for i := range order {
+		order[i] = i
 	}
-	r.out.openEnded = len(l) == n
-	r.logX = r.out.priorShrinkage().mean
-	for i := range l {
-		order = append(order, i)
-	}
+	u, l := r.u, r.l
 	slices.SortStableFunc(order, func(a, b int) int { return cmp.Compare(l[a], l[b]) })
-	r.flat = make([]float64, 0, usualDepth*n*r.dim)
+	r.flat = make([]float64, 0, usualDepth*len(l)*r.dim)
+	r.u, r.l = make([]float64, 0, len(u)), make([]float64, 0, len(l))
 	for _, i := range order {
 		r.u = append(r.u, u[i*r.dim:(i+1)*r.dim]...)
 		r.l = append(r.l, l[i])
@@ -91,5 +100,6 @@ func (r *runner) begin(ctx context.Context) error {
 		r.strand = append(r.strand, r.strands)
 		r.strands++
 	}
+	r.begun = true
 	return nil
 }

@@ -8,19 +8,19 @@ import (
 	"sort"
 )
 
-// ranks collects the insertion ranks of a run. The new points of a batch enter
-// one after another; each takes its rank among the survivors and those that
-// entered before it. If the draws are fair, all these ranks are independent and
+// ranks collects the insertion ranks of a run. The new points of a flight enter
+// one after another; each takes its rank among the live points known when it
+// landed and those that entered before it. If the draws are fair, all these ranks are independent and
 // uniform (MNRAS 497, 5256 (2020)).
 type ranks struct {
-	order []float64 // sorted log-likelihoods of survivors and entered points
+	order []float64 // sorted log-likelihoods of known and entered points
 	u     []float64 // rank made continuous on [0, 1)
 	by    []uint8   // method that drew each
 }
 
-// begin starts a batch with the survivors' log-likelihoods.
-func (r *ranks) begin(survivors []float64) {
-	r.order = append(r.order[:0], survivors...)
+// begin starts a flight with the log-likelihoods of the known live points.
+func (r *ranks) begin(known []float64) {
+	r.order = append(r.order[:0], known...)
 	slices.Sort(r.order)
 }
 
@@ -57,7 +57,7 @@ func uniformP(u []float64) float64 {
 	for i, x := range s {
 		d = max(d, x-float64(i)/float64(n), float64(i+1)/float64(n)-x)
 	}
-	// Finite-n correction of the limit law: Stephens, J. R. Stat. Soc. B 32,
+	// Finite-n correction of the limit law: J. R. Stat. Soc. B 32,
 	// 115 (1970), from memory.
 	root := math.Sqrt(float64(n))
 	return kolmogorovTail((root + 0.12 + 0.11/root) * d)

@@ -37,9 +37,8 @@ func Run(ctx context.Context, newTarget func() (Target, error), s Settings) (*Ou
 	}
 	// The goroutines end with this call, also on an error.
 	ctx, cancel := context.WithCancel(ctx)
-	defer cancel()
 	g.crew = newCrew(ctx, p)
-	defer g.crew.stop()
+	defer func() { cancel(); g.crew.stop() }()
 	if r := g.current; r != nil { // what was in flight is drawn again
 		r.crew = g.crew
 		for _, f := range r.flights {
@@ -94,7 +93,9 @@ func (g *growing) grow(ctx context.Context) (*Outcome, error) {
 		}
 		switch {
 		case err == nil:
-			g.parts = append(g.parts, r.finish())
+			if part := r.finish(); len(part.Points) > 0 {
+				g.parts = append(g.parts, part)
+			}
 			g.current = nil
 		case ctx.Err() != nil && errors.Is(err, ctx.Err()):
 			return g.interrupted(err)
@@ -113,6 +114,9 @@ func (g *growing) begin() (*runner, error) {
 	if len(g.parts) == 0 {
 		g.current = newRunner(g, nil)
 		return g.current, nil
+	}
+	if most := g.set.MaxCalls; most != 0 && g.calls() >= most {
+		g.left = nil
 	}
 	if len(g.left) == 0 {
 		if done, err := g.plan(len(g.parts)); done || err != nil {
@@ -138,30 +142,30 @@ func (g *growing) plan(n int) (bool, error) {
 	case whole.Status != Converged || s.reached(whole):
 		return true, nil
 	case s.MaxCalls != 0 && whole.Calls >= s.MaxCalls:
-		whole.Status = CallLimit
-		g.missed("the limit of %d calls was reached", s.MaxCalls)
+		g.missed(CallLimit, "the limit of %d calls was reached", s.MaxCalls)
 		return true, nil
 	case limited:
-		g.missed("%d times the live points were reached: use more of them", s.MaxGrowth)
+		g.missed(GrowthLimit, "%d times the live points were reached: use more of them", s.MaxGrowth)
 		return true, nil
 	}
 	g.left, g.limited = s.additions(whole)
 	g.gauge.plan(whole, g.left)
 	if len(g.left) == 0 {
-		g.missed("%d times the live points were reached: use more of them", s.MaxGrowth)
+		g.missed(GrowthLimit, "%d times the live points were reached: use more of them", s.MaxGrowth)
 		return true, nil
 	}
 	return false, nil
 }
 
-// missed notes why the whole is short of its targets.
-func (g *growing) missed(format string, args ...any) {
+// missed says why the whole is short of its targets.
+func (g *growing) missed(status Status, format string, args ...any) {
+	g.whole.Status = status
 	why := fmt.Sprintf(format, args...)
 	if e := g.set.EvidenceError; e > 0 && g.whole.LogEvidenceError > e {
-		g.whole.note("%s at an error of %.3g nat, %.3g wanted", why, g.whole.LogEvidenceError, e)
+		g.whole.missed = append(g.whole.missed, fmt.Sprintf("%s at an error of %.3g nat, %.3g wanted", why, g.whole.LogEvidenceError, e))
 	}
 	if e := g.set.PosteriorSamples; g.whole.EffectiveSamples < e {
-		g.whole.note("%s at %.0f effective posterior samples, %.0f wanted", why, g.whole.EffectiveSamples, e)
+		g.whole.missed = append(g.whole.missed, fmt.Sprintf("%s at %.0f effective posterior samples, %.0f wanted", why, g.whole.EffectiveSamples, e))
 	}
 	g.whole.judge()
 }
@@ -207,7 +211,7 @@ func (g *growing) interrupted(err error) (*Outcome, error) {
 	g.whole = whole
 	whole.Status, whole.Partial = Interrupted, true
 	if r.path != nil {
-		g.missed("interrupted")
+		g.missed(Interrupted, "interrupted")
 	}
 	whole.judge()
 	return whole, nil

@@ -3,6 +3,8 @@ package sampler
 import (
 	"context"
 	"math"
+
+	"knell/internal/random"
 )
 
 // runner is the first run, or an addition to it, under way. Its live points are
@@ -73,7 +75,7 @@ func newRunner(g *growing, path *path) *runner {
 		r.out.Runs, r.out.LivePoints = 1, s.LivePoints
 	} else {
 		r.out.LivePoints = path.first
-		r.beside = newCompanions(g.parts)
+		r.beside = newCompanions(g.parts, random.New(s.Seed, "companions", r.run))
 	}
 	return r
 }
@@ -84,12 +86,8 @@ func newRunner(g *growing, path *path) *runner {
 func (r *runner) step(ctx context.Context) (bool, error) {
 	switch {
 	case !r.begun:
-		if err := r.begin(ctx); err != nil {
-			return false, err
-		}
-		r.begun = true
-		return true, nil
-	case len(r.flights) == InFlight || r.ending && len(r.flights) > 0:
+		return true, r.begin(ctx)
+	case len(r.flights) == InFlight || r.ending && len(r.flights) > 0 || r.overdue():
 		if err := r.land(); err != nil {
 			return false, err
 		}
@@ -110,7 +108,7 @@ func (r *runner) next(ctx context.Context) error {
 		return nil
 	}
 	n := len(r.l)
-	k := max(1, min(r.set.LivePoints, n)/BatchShare)
+	k := max(1, n/BatchShare)
 	for k < n && r.l[k] == r.l[k-1] { // a plateau goes as a whole
 		k++
 	}

@@ -120,6 +120,9 @@ func (g *growing) load() error {
 	if err := s.fits(g.set, g.pool.dim); err != nil {
 		return err
 	}
+	if err := s.check(g.pool.dim); err != nil {
+		return err
+	}
 	g.earlier = s.Elapsed
 	for i := range s.Parts {
 		g.parts = append(g.parts, s.Parts[i].outcome(g.set, g.pool.dim))
@@ -148,6 +151,9 @@ func (g *growing) load() error {
 // fits compares the settings of the state with those of the run.
 func (s *state) fits(set Settings, dim int) error {
 	wanted := set.identity(dim)
+	if len(s.Settings) > len(wanted) {
+		return &ResumeError{"list of settings", fmt.Sprintf("of %d", len(s.Settings)), fmt.Sprint(len(wanted))}
+	}
 	for i, w := range wanted {
 		if i >= len(s.Settings) {
 			return &ResumeError{w.Name, "not given", quote(w.Value)}
@@ -241,6 +247,9 @@ func (g *growing) restore(k *runnerState) error {
 			return &ResumeError{"addition under way", "one more", "none, by its own plan"}
 		}
 		p, g.left = g.left[0], g.left[1:]
+	}
+	if p != nil && k.Level > len(p.level) {
+		return &ResumeError{"level", fmt.Sprint(k.Level), fmt.Sprintf("at most %d", len(p.level))}
 	}
 	r := newRunner(g, p)
 	r.u, r.l, r.birth, r.strand, r.freed = k.U, k.L, k.Birth, k.Strand, k.Freed
