@@ -1,6 +1,7 @@
 package sampler
 
 import (
+	"cmp"
 	"math"
 	"slices"
 	"sync"
@@ -73,14 +74,8 @@ func (o *Outcome) resample(shift []float64) *resampling {
 	for i := range order {
 		order[i] = int32(i)
 	}
-	slices.SortStableFunc(order, func(a, b int32) int {
-		switch x, y := o.Birth[a], o.Birth[b]; {
-		case x < y:
-			return -1
-		case x > y:
-			return 1
-		}
-		return 0
+	slices.SortFunc(order, func(a, b int32) int {
+		return cmp.Or(cmp.Compare(o.Birth[a], o.Birth[b]), cmp.Compare(a, b))
 	})
 	r.born, r.before = make([]int32, n), make([]int32, n)
 	r.up, r.scale = make([]float64, n), make([]float64, n)

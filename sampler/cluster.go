@@ -112,14 +112,7 @@ func kmeans(y []float64, dim int, of []int, centres []float64) {
 			best := of[i]
 			least := gap2(row, centres[best*dim:(best+1)*dim])
 			for c := 0; c < len(centres); c += dim {
-				var d float64
-				for k, m := range centres[c : c+dim] {
-					d += (row[k] - m) * (row[k] - m)
-					if d >= least {
-						break
-					}
-				}
-				if d < least {
+				if d := within(row, centres[c:c+dim], least); d < least {
 					best, least = c/dim, d
 				}
 			}
@@ -131,6 +124,24 @@ func kmeans(y []float64, dim int, of []int, centres []float64) {
 		}
 		meanCentres(y, dim, of, centres)
 	}
+}
+
+// within is gap2, or some value of at least limit where that is larger. It looks
+// at the limit after every fourth coordinate.
+func within(x, y []float64, limit float64) float64 {
+	var s float64
+	for len(x) >= 4 && len(y) >= 4 {
+		a, b, c, d := x[0]-y[0], x[1]-y[1], x[2]-y[2], x[3]-y[3]
+		s += a*a + b*b + (c*c + d*d)
+		if s >= limit {
+			return s
+		}
+		x, y = x[4:], y[4:]
+	}
+	for k := range x {
+		s += (x[k] - y[k]) * (x[k] - y[k])
+	}
+	return s
 }
 
 // meanCentres sets each centre to the mean of its points; one that has lost all

@@ -31,11 +31,12 @@ func (o *Outcome) weigh(workers int) {
 	start := o.priorShrinkage()
 	down := make([]float64, n+1) // exp(-1/n_i), X_i over X_(i-1) in those units
 	scale := make([]float64, n)  // L_i X_i over the largest, in those units
+	up := make([]float64, n)     // one over down
 	inverse := make([]float64, n)
 	mean, top := start.mean, math.Inf(-1)
 	for i, l := range o.LogLikelihood {
 		inverse[i] = 1 / float64(o.LiveCount[i])
-		down[i] = math.Exp(-inverse[i])
+		up[i], down[i] = math.Exp(inverse[i]), math.Exp(-inverse[i])
 		mean -= inverse[i]
 		scale[i] = l + mean
 		top = max(top, scale[i])
@@ -69,11 +70,17 @@ func (o *Outcome) weigh(workers int) {
 					}
 					x[i+1] = v
 				}
-				var z float64
-				for i := range n {
-					p := scale[i] * shell(x, down, i)
+				// shell without its two special cases.
+				w[0] = scale[0] * shell(x, up, down, 0)
+				w[n-1] = scale[n-1] * shell(x, up, down, n-1)
+				z := w[0]
+				for i := 1; i < n-1; i++ {
+					p := 0.5 * scale[i] * (x[i]*up[i] - x[i+2]*down[i+1])
 					w[i] = p
 					z += p
+				}
+				if n > 1 {
+					z += w[n-1]
 				}
 				sum, share := sums[c], 1/z
 				for i, p := range w {
@@ -117,8 +124,8 @@ func expm(t float64) float64 {
 }
 
 // shell is the volume of point i in units of X_i's expectation.
-func shell(x, down []float64, i int) float64 {
-	before := x[i] / down[i]
+func shell(x, up, down []float64, i int) float64 {
+	before := x[i] * up[i]
 	here := x[i+1]
 	if i == 0 {
 		before = 2*before - here

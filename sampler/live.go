@@ -71,7 +71,9 @@ func (r *runner) finish() *Outcome {
 	for i := range order {
 		order[i] = i
 	}
-	slices.SortStableFunc(order, func(a, b int) int { return cmp.Compare(o.LogLikelihood[a], o.LogLikelihood[b]) })
+	slices.SortFunc(order, func(a, b int) int {
+		return cmp.Or(cmp.Compare(o.LogLikelihood[a], o.LogLikelihood[b]), cmp.Compare(a, b))
+	})
 	l, birth, strand := o.LogLikelihood, o.Birth, o.Strand
 	o.LogLikelihood, o.Birth, o.Strand = make([]float64, n), make([]float64, n), make([]int32, n)
 	flat := make([]float64, n*r.dim)

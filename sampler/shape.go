@@ -166,13 +166,7 @@ func nearest(y, centres []float64) int {
 	dim := len(y)
 	best, least := 0, gap2(y, centres[:dim])
 	for c := dim; c < len(centres); c += dim {
-		var d float64
-		for k, m := range centres[c : c+dim] {
-			d += (y[k] - m) * (y[k] - m)
-			if d >= least {
-				break
-			}
-		}
+		d := within(y, centres[c:c+dim], least)
 		if d < least {
 			best, least = c/dim, d
 		}
