@@ -15,7 +15,7 @@
 //     take fewest calls. The ellipsoids (bound.go, ellipsoid.go) are fitted to
 //     clusters of the live points (cluster.go, trial.go), with shapes that points
 //     removed lately help to know (shape.go), and sizes by cross-validation
-//     (crossval.go), where periodic dimensions are cut open (frame.go) and
+//     (crossval.go, grow.go), where periodic dimensions are cut open (frame.go) and
 //     reflective ones unfolded (lift.go).
 //  4. The crew draws the slots of up to four flights, oldest first (crew.go,
 //     draw.go). Each slot has a random stream of its own, keyed by part, batch and

@@ -5,14 +5,10 @@ import "math"
 const (
 	// forgotten and remembered bound the largest correlation between the
 	// coordinates of a walker's first and last place: below the one, slices may
-	// take fewer steps, above the other they take more. Measured on a curved
-	// ridge in 7 dimensions with 300 live points, ln Z is high by 0.8 of its
-	// error with the least number of steps, by 0.4 with these bounds and by 0.2
-	// with half of them, at twice the calls; that was with up to six times the
-	// least number of steps. Three times is the limit because where islands of
-	// likelihood part, more steps cost most of a run and change nothing. On the
-	// ridge (40 seeds, 500 live points, TestLong) z is +0.25, -0.09 and -0.01,
-	// each ± 0.16, with limits of 2, 3 and 6, at 1.2, 1.6 and 2.7 million calls.
+	// take fewer steps, above the other they take more. On curved ridges too few
+	// steps make ln Z high. Three times the least number is the limit because where
+	// islands of likelihood part, more steps cost most of a run and change nothing;
+	// the ridge of TestLong shows what is left (-run Long -long).
 	forgotten, remembered = 0.2, 0.3
 
 	moreSteps, fewerSteps = 1.2, 0.97 // per batch

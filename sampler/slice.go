@@ -104,24 +104,23 @@ func (w *worker) within(b *bound, threshold, l float64, rng *rand.Rand) (float64
 	return w.shrink(b, c, lo, hi, threshold, l, rng)
 }
 
-// anywhere takes one step with stepping out; periodic and
+// anywhere takes one step with stepping out, by the length of w.dir; periodic and
 // lifted dimensions go round.
 func (w *worker) anywhere(b *bound, threshold, l float64, rng *rand.Rand) (float64, error) {
-	width := 1.0
 	if len(b.ellipsoids) == 0 {
 		direction(rng, w.dir)
 	} else {
 		w.along(b, pick(b.weight, rng.Float64()), rng)
 	}
-	lo := -rng.Float64() * width
-	hi := lo + width
+	lo := -rng.Float64()
+	hi := lo + 1
 	left := rng.IntN(maxStepOut + 1)
 	right := maxStepOut - left
 	for _, end := range []struct {
 		t    *float64
 		step float64
 		left int
-	}{{&lo, -width, left}, {&hi, width, right}} {
+	}{{&lo, -1, left}, {&hi, 1, right}} {
 		for ; end.left > 0; end.left-- {
 			w.move(b, *end.t)
 			v, err := w.test(b)

@@ -76,9 +76,8 @@ func (o *Outcome) Strands() [][]int {
 // Subset returns the outcome of some of the strands alone, as a run of that many
 // live points: halves of a run are independent of one another but for the first
 // shrinkage where the likelihood is zero on a part of the prior, which they
-// share. Points are shared with o. Calls, phases and ranks stay with o. Merge
-// takes the live number of a part for constant up to its next dead point, which
-// that of a subset is not: the subsets of one run are not for Merge.
+// share. Points are shared with o. Calls, phases and ranks stay with o. The subsets
+// of one run are not for Merge, which would count the first draws twice.
 func (o *Outcome) Subset(strands []int) (*Outcome, error) {
 	all := o.Strands()
 	if all == nil {

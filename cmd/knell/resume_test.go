@@ -4,6 +4,8 @@ import (
 	"bytes"
 	"context"
 	"encoding/json"
+	"flag"
+	"fmt"
 	"maps"
 	"os"
 	"os/exec"
@@ -116,6 +118,9 @@ func sameFiles(t *testing.T, got, want string) {
 	}
 }
 
+// killings is how often the program is killed; more with -args -killings 30.
+var killings = flag.Int("killings", 6, "how often TestKilledAndGoneOn kills")
+
 // TestKilledAndGoneOn kills the program at random moments and goes on with it, until
 // it ends by itself.
 func TestKilledAndGoneOn(t *testing.T) {
@@ -133,34 +138,41 @@ func TestKilledAndGoneOn(t *testing.T) {
 
 	rng := random.New(20, "moments to kill at")
 	kills, resumed := 0, 0
-	for {
-		c, stderr := program("weigh", "event.toml", "--out", "broken")
-		if err := c.Start(); err != nil {
-			t.Fatal(err)
+	for round := 0; kills < *killings; round++ {
+		out := fmt.Sprintf("broken-%d", round)
+		// After so many, a round is left to end.
+		for most := kills + 6; ; {
+			c, stderr := program("weigh", "event.toml", "--out", out)
+			if err := c.Start(); err != nil {
+				t.Fatal(err)
+			}
+			if kills < min(most, *killings) {
+				time.AfterFunc(time.Duration((0.1+0.3*rng.Float64())*float64(took)), func() { _ = c.Process.Kill() })
+			}
+			err := c.Wait()
+			if strings.Contains(stderr.String(), "goes on from") {
+				resumed++
+			}
+			if err == nil {
+				break
+			}
+			kills++
+			if c.ProcessState.Exited() {
+				t.Fatalf("%v: %s", err, stderr)
+			}
+			if _, err := os.Stat(filepath.Join(out, "evidence.json")); err == nil {
+				t.Error("a killed run left a result")
+			}
 		}
-		if kills < 6 {
-			time.AfterFunc(time.Duration((0.1+0.3*rng.Float64())*float64(took)), func() { _ = c.Process.Kill() })
-		}
-		err := c.Wait()
-		if strings.Contains(stderr.String(), "goes on from") {
-			resumed++
-		}
-		if err == nil {
+		sameFiles(t, out, "whole")
+		if t.Failed() {
 			break
-		}
-		kills++
-		if c.ProcessState.Exited() {
-			t.Fatalf("%v: %s", err, stderr)
-		}
-		if _, err := os.Stat(filepath.Join("broken", "evidence.json")); err == nil {
-			t.Error("a killed run left a result")
 		}
 	}
 	if kills == 0 || resumed == 0 {
 		t.Fatalf("killed %d times, gone on with %d times: nothing was tested", kills, resumed)
 	}
 	t.Logf("killed %d times, gone on with %d times", kills, resumed)
-	sameFiles(t, "broken", "whole")
 }
 
 // interrupt runs a command line in this process and interrupts it once it has kept a
