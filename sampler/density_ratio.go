@@ -43,8 +43,30 @@ type Ratio struct {
 	Error            float64 // its standard deviation, nats
 	EffectiveSamples float64 // (sum w)² / sum w² in the window
 	Near             float64 // the same within a quarter of the window
+	Share            float64 // of the posterior within a quarter of the window
 	HalfWidth        float64 // of the window, in the cube coordinate
+	Change           float64 // of LogBayesFactor with half the window, nats, NaN if that has no fit
+	ChangeError      float64 // its standard deviation, nats
 	Warnings         []string
+
+	reached bool // by as many posterior samples as fewReaching
+}
+
+// fewReaching is the number of effective posterior samples of the whole run that
+// must lie near the nested value: below it the density is that of a tail which the
+// samples as such do not reach.
+const fewReaching = 5
+
+// share is the posterior probability of offsets below h.
+func share(offset, weight []float64, h float64) float64 {
+	var near, all float64
+	for i, w := range weight {
+		all += w
+		if math.Abs(offset[i]) < h {
+			near += w
+		}
+	}
+	return near / all
 }
 
 // SavageDickey returns the Bayes factor of a hypothesis nested in that of the
@@ -113,6 +135,8 @@ func (o *Outcome) SavageDickey(dimension int, at float64, s RatioSettings) (Rati
 	r.HalfWidth = wide.h
 	r.EffectiveSamples = wide.effective(all.weight, 1)
 	r.Near = wide.effective(all.weight, nearShare)
+	r.Share = share(offset, all.weight, nearShare*wide.h)
+	r.reached = r.Share*o.EffectiveSamples >= fewReaching
 	var ok bool
 	if r.LogBayesFactor, ok = wide.logDensity(all.weight); !ok {
 		return r, fmt.Errorf("sampler: density ratio: the density of coordinate %d at %g has no fit by a quadratic in a window of half-width %.3g with %.0f effective samples", dimension, at, wide.h, r.EffectiveSamples)
@@ -144,10 +168,17 @@ func (o *Outcome) SavageDickey(dimension int, at float64, s RatioSettings) (Rati
 	if lost := replicas.count - len(good); lost > 0 {
 		r.warn("%d of %d replicas have no fit: the error may be too small", lost, replicas.count)
 	}
-	if sd := replicas.spread(moved); halfOK && math.Abs(half-r.LogBayesFactor) > 3*sd {
-		r.warn("half the window changes the log Bayes factor by %+.3f nat, %.1f of that change's errors: the density is not a smooth curve at that scale", half-r.LogBayesFactor, math.Abs(half-r.LogBayesFactor)/sd)
+	r.Change, r.ChangeError = math.NaN(), replicas.spread(moved)
+	if halfOK {
+		r.Change = half - r.LogBayesFactor
 	}
-	if !r.Supported() {
+	if !r.steady() {
+		r.warn("half the window changes the log Bayes factor by %+.3f nat, %.1f of that change's errors: the density is not a smooth curve at that scale", r.Change, math.Abs(r.Change)/r.ChangeError)
+	}
+	if !r.reached {
+		r.warn("a share of %.2g of the posterior lies near the nested value: the density there is that of a far tail", r.Share)
+	}
+	if r.Near < fewEffective {
 		r.warn("%.0f effective samples lie near the nested value, want at least %d: the density there is carried over from farther off", r.Near, fewEffective)
 	}
 	if o.Partial {
@@ -157,8 +188,14 @@ func (o *Outcome) SavageDickey(dimension int, at float64, s RatioSettings) (Rati
 }
 
 // Supported reports whether enough effective samples lie near the nested value,
-// 50 of them, to know the density there without carrying it over from farther off.
-func (r Ratio) Supported() bool { return r.Near >= fewEffective }
+// 50 of them, to know the density there without carrying it over from farther
+// off, whether the posterior reaches it, and whether half the window gives the same
+// within three errors. In a far tail even many points of little weight do not
+// help: the density falls by more within the window than a quadratic follows.
+func (r Ratio) Supported() bool { return r.Near >= fewEffective && r.reached && r.steady() }
+
+// steady reports whether half the window gives the same.
+func (r Ratio) steady() bool { return !(math.Abs(r.Change) > 3*r.ChangeError) }
 
 func (r *Ratio) warn(format string, args ...any) {
 	r.Warnings = append(r.Warnings, fmt.Sprintf(format, args...))

@@ -64,7 +64,7 @@ func (r *runner) finish() *Outcome {
 	if m := r.memory; m.peak > doubtfulMemory {
 		// A warning, not a doubt: walkers also stay where islands of likelihood part
 		// within one cluster, which moves no evidence that the tests can see.
-		o.note("slices of %.0f steps still remember their start (correlation %.2f): use more live points and compare", mostSteps*m.least, m.peak)
+		o.note("slices of %.0f steps still remember their start (covariance of first and last place %.2f of the live points' own): use more live points and compare", mostSteps*m.least, m.peak)
 	}
 	n := len(o.LogLikelihood)
 	order := make([]int, n)

@@ -122,7 +122,7 @@ func (o *Outcome) note(format string, args ...any) {
 
 // judge sets the rank tests, the warnings and the verdict.
 func (o *Outcome) judge() {
-	o.Warnings = append(append([]string(nil), o.notes...), o.missed...)
+	o.Warnings = append([]string(nil), o.notes...)
 	o.testRanks()
 	doubts := append([]string(nil), o.missed...)
 	if what := o.unfair(); what != "" {

@@ -145,13 +145,13 @@ func (g *growing) plan(n int) (bool, error) {
 		g.missed(CallLimit, "the limit of %d calls was reached", s.MaxCalls)
 		return true, nil
 	case limited:
-		g.missed(GrowthLimit, "%d times the live points were reached: use more of them", s.MaxGrowth)
+		g.missed(GrowthLimit, "the run grew to %d times its live points (use more)", s.MaxGrowth)
 		return true, nil
 	}
 	g.left, g.limited = s.additions(whole)
 	g.gauge.plan(whole, g.left)
 	if len(g.left) == 0 {
-		g.missed(GrowthLimit, "%d times the live points were reached: use more of them", s.MaxGrowth)
+		g.missed(GrowthLimit, "the run grew to %d times its live points (use more)", s.MaxGrowth)
 		return true, nil
 	}
 	return false, nil

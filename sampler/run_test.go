@@ -163,8 +163,8 @@ func TestEvidenceErrorIsReached(t *testing.T) {
 		t.Fatal(err)
 	}
 	// The live number is a mean over a batch, a little below LivePoints.
-	if o.LivePoints < 2*s.LivePoints || o.LivePoints > 21*s.LivePoints/10 || len(o.Warnings) != 1 || !strings.Contains(o.Warnings[0], "use more of them") {
-		t.Errorf("%d live points, warnings %q, want %d and one that asks for more", o.LivePoints, o.Warnings, 2*s.LivePoints)
+	if o.LivePoints < 2*s.LivePoints || o.LivePoints > 21*s.LivePoints/10 || o.Status != GrowthLimit || !strings.Contains(o.Verdict, "2 times its live points") {
+		t.Errorf("%d live points, status %v, verdict %q, want %d and a doubt that says so", o.LivePoints, o.Status, o.Verdict, 2*s.LivePoints)
 	}
 }
 

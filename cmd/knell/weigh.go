@@ -71,14 +71,20 @@ func weigh(c *cli.Context) error {
 		result.Hypotheses[i].Posterior = report.PosteriorFile(result.Hypotheses[i].Name, ".csv")
 	}
 	if err := report.WriteDirectory(directory, result, posteriors, config.AsRun()); err != nil {
-		return errors.Join(err, kept.release())
+		// What was computed is shown even so, and the states stay to go on with.
+		return errors.Join(err, kept.release(), show(c, result, ""))
 	}
 	interrupted := result.Partial && c.Context.Err() != nil
 	if failure == nil && !interrupted {
 		// Nothing is left to go on with.
-		err = kept.discard()
+		if err := kept.discard(); err != nil {
+			fmt.Fprintf(c.App.ErrWriter, "knell: the result is complete, but its kept states could not be removed: %v\n", err)
+		}
 	}
-	if err = errors.Join(err, kept.release(), show(c, result, directory), failure); err != nil {
+	if err := kept.release(); err != nil {
+		fmt.Fprintf(c.App.ErrWriter, "knell: %v\n", err)
+	}
+	if err := errors.Join(show(c, result, directory), failure); err != nil {
 		return err
 	}
 	if interrupted {
@@ -133,13 +139,13 @@ func sample(c *cli.Context, prepared *event.Prepared, directory string, kept *st
 // show prints the result as the command line asks.
 func show(c *cli.Context, result *report.Weighing, directory string) error {
 	if c.Bool("json") {
-		if err := result.WriteJSON(c.App.Writer); err != nil || c.Bool("quiet") {
+		if err := result.WriteJSON(c.App.Writer); err != nil || c.Bool("quiet") || directory == "" {
 			return err
 		}
 		_, err := fmt.Fprintf(c.App.ErrWriter, "written to %s\n", directory)
 		return err
 	}
-	if err := report.Table(c.App.Writer, result); err != nil {
+	if err := report.Table(c.App.Writer, result); err != nil || directory == "" {
 		return err
 	}
 	_, err := fmt.Fprintf(c.App.Writer, "\nwritten to %s\n", directory)

@@ -36,7 +36,7 @@ func (p *Prepared) densityRatios(h *hypothesis, o *sampler.Outcome) []report.Den
 		case err != nil:
 			entry.Note = strings.TrimPrefix(err.Error(), "sampler: density ratio: ")
 		case !r.Supported():
-			entry.Note = fmt.Sprintf("the posterior has %.0f effective samples near that value, too few for its density there", r.Near)
+			entry.Note = fmt.Sprintf("the posterior hardly reaches that value (%.0f effective samples and a share of %.1g of it lie near), so its density there is not known", r.Near, r.Share)
 		default:
 			entry.Known = true
 			entry.LogBayesFactor = report.Number(r.LogBayesFactor + n.logShare)
