@@ -224,7 +224,8 @@ func writeCautions(out io.Writer, w *Weighing) error {
 	}
 	ratios, cautions := w.ratios()
 	for _, r := range ratios {
-		if r.SavageDickeyNote != "" {
+		// Where there is no number, its absence is in the table and no doubt.
+		if r.SavageDickey != nil && r.SavageDickeyNote != "" {
 			run = append(run, fmt.Sprintf("Savage-Dickey ratio of %s over %s at %s: %s", r.For, r.Against, r.SavageDickeyAt, r.SavageDickeyNote))
 		}
 	}
