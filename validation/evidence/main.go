@@ -26,9 +26,6 @@ import (
 	"flag"
 	"fmt"
 	"io"
-	"os"
-	"os/signal"
-	"syscall"
 
 	"knell/validation/trials"
 )
@@ -41,12 +38,7 @@ const (
 	interrupted = 130
 )
 
-func main() {
-	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt, syscall.SIGTERM)
-	status := run(ctx, os.Args[1:], os.Stdout, os.Stderr)
-	stop()
-	os.Exit(status)
-}
+func main() { trials.Main(run) }
 
 // run is the whole command, returning its exit status.
 func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {

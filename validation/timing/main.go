@@ -23,11 +23,9 @@ import (
 	"flag"
 	"fmt"
 	"io"
-	"os"
-	"os/signal"
-	"syscall"
 
 	"knell/internal/report"
+	"knell/validation/trials"
 )
 
 // Exit statuses.
@@ -38,12 +36,7 @@ const (
 	interrupted = 130
 )
 
-func main() {
-	ctx, stop := signal.NotifyContext(context.Background(), os.Interrupt, syscall.SIGTERM)
-	status := run(ctx, os.Args[1:], os.Stdout, os.Stderr)
-	stop()
-	os.Exit(status)
-}
+func main() { trials.Main(run) }
 
 // run is the whole command, returning its exit status.
 func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
