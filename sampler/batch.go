@@ -1,7 +1,6 @@
 package sampler
 
 import (
-	"cmp"
 	"math"
 	"math/rand/v2"
 	"slices"
@@ -55,7 +54,7 @@ func (r *runner) send(u, l []float64, count int) {
 func (r *runner) launch(f *flight) {
 	f.next, f.done, f.last, f.err, f.errSlot = 0, 0, 0, nil, 0
 	f.fresh.resize(f.count(), r.dim)
-	r.crew.send(f)
+	r.of.crew.send(f)
 }
 
 func (r *runner) newFlight() *flight {
@@ -70,7 +69,7 @@ func (r *runner) newFlight() *flight {
 // land takes in the oldest batch.
 func (r *runner) land() error {
 	f := r.flights[0]
-	if err := r.crew.wait(f); err != nil {
+	if err := r.of.crew.wait(f); err != nil {
 		return err
 	}
 	count := f.count()
@@ -126,7 +125,7 @@ func (r *runner) prepare(st *stage) {
 	needs := math.Exp(-r.logX) > priorCalls && enough
 	switch {
 	case needs && (r.bound == nil || r.boundX-r.logX > r.bound.lasts()):
-		if b := newBoundAfter(r.recent(n), st.u, r.dim, r.logX, r.set.Periodic, r.set.Reflective, r.bound, r.set.Workers, stream); b != nil {
+		if b := newBound(r.recent(n), st.u, r.dim, r.logX, r.set.Periodic, r.set.Reflective, r.bound, r.set.Workers, stream); b != nil {
 			r.bound, r.boundX, r.shrunkX = b, r.logX, r.logX
 		}
 	case needs && r.shrunkX-r.logX > shrinkStep:
@@ -161,15 +160,11 @@ func (r *runner) recent(n int) []float64 {
 // insert merges the points of a flight into the sorted live ones. Those that the
 // threshold has passed in the meantime are dead.
 func (r *runner) insert(f *flight) {
-	order := make([]int, 0, f.count())
-	for i := range f.fresh.l {
-		order = append(order, i)
-	}
-	slices.SortStableFunc(order, func(a, b int) int { return cmp.Compare(f.fresh.l[a], f.fresh.l[b]) })
+	order := rising(f.fresh.l)
 	d := r.dim
 	late := 0
 	for ; late < len(order) && f.fresh.l[order[late]] <= r.threshold; late++ {
-		i := order[late]
+		i := int(order[late])
 		r.dies(f.fresh.u[i*d:(i+1)*d], f.fresh.l[i], f.stage.threshold, f.strand[i])
 	}
 	order = order[late:]
@@ -181,7 +176,7 @@ func (r *runner) insert(f *flight) {
 	r.strand = slices.Grow(r.strand, len(order))[:n]
 	i, j := old-1, len(order)-1
 	for at := n - 1; j >= 0; at-- { // from the top, so that nothing is overwritten
-		if s := order[j]; i < 0 || f.fresh.l[s] >= r.l[i] {
+		if s := int(order[j]); i < 0 || f.fresh.l[s] >= r.l[i] {
 			r.l[at], r.birth[at], r.strand[at] = f.fresh.l[s], f.stage.threshold, f.strand[s]
 			copy(r.u[at*d:(at+1)*d], f.fresh.u[s*d:(s+1)*d])
 			j--

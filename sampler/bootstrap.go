@@ -1,7 +1,6 @@
 package sampler
 
 import (
-	"cmp"
 	"math"
 	"slices"
 	"sync"
@@ -70,13 +69,7 @@ func (o *Outcome) resample(shift []float64) *resampling {
 	if n := float64(len(r.groups[0])); n > 1 {
 		r.swell = n / (n - 1)
 	}
-	order := make([]int32, n)
-	for i := range order {
-		order[i] = int32(i)
-	}
-	slices.SortFunc(order, func(a, b int32) int {
-		return cmp.Or(cmp.Compare(o.Birth[a], o.Birth[b]), cmp.Compare(a, b))
-	})
+	order := rising(o.Birth)
 	r.born, r.before = make([]int32, n), make([]int32, n)
 	r.up, r.scale = make([]float64, n), make([]float64, n)
 	for e, i := range order {
@@ -259,12 +252,7 @@ func (o *Outcome) strandInfluence() []float64 {
 	influence := make([]float64, slices.Max(o.Strand)+1)
 	for i, s := range o.Strand {
 		// The first removal it lived through is the first above its birth.
-		from, _ := slices.BinarySearchFunc(o.LogLikelihood, o.Birth[i], func(l, birth float64) int {
-			if l <= birth {
-				return -1
-			}
-			return 1
-		})
+		from, _ := slices.BinarySearchFunc(o.LogLikelihood, o.Birth[i], upTo)
 		influence[s] += a[i] - (taken[i+1] - taken[from])
 	}
 	return influence

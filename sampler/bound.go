@@ -42,20 +42,15 @@ type bound struct {
 	liftX, liftWait float64
 }
 
-// newBound is newBoundAfter without points that were removed lately.
-func newBound(points []float64, dim int, logX float64, periodic, reflective []bool, last *bound, workers int, stream func(i int) *rand.Rand) *bound {
-	return newBoundAfter(nil, points, dim, logX, periodic, reflective, last, workers, stream)
-}
-
-// newBoundAfter fits a bound to n×dim points of the cube that are spread
+// newBound fits a bound to n×dim points of the cube that are spread
 // uniformly over a prior volume of about exp(logX): the number of ellipsoids is
 // the one with the least volume. recent, m×dim in the order of removal, are the
 // points that were removed last, lookBack of them if there are as many: they
 // help with the shapes and have no say in the size, but for the very last. last,
 // which may be nil, is the bound before. stream returns the random stream of a
-// number; the result does not depend on the number of workers. newBoundAfter
+// number; the result does not depend on the number of workers. newBound
 // returns nil if the points are degenerate.
-func newBoundAfter(recent, points []float64, dim int, logX float64, periodic, reflective []bool, last *bound, workers int, stream func(i int) *rand.Rand) *bound {
+func newBound(recent, points []float64, dim int, logX float64, periodic, reflective []bool, last *bound, workers int, stream func(i int) *rand.Rand) *bound {
 	rng := stream(0)
 	n := len(points) / dim
 	b := &bound{frame: newFrame(points, dim, periodic), dim: dim, ladderWait: ladderStep}

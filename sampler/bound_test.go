@@ -109,7 +109,7 @@ func (g region) bound(seed uint64, points []float64) *bound {
 }
 
 func (g region) boundAfter(seed uint64, points, recent []float64) *bound {
-	return newBoundAfter(recent, points, g.dim, math.Log(g.volume), g.periodic, nil, nil, 2, func(i int) *rand.Rand {
+	return newBound(recent, points, g.dim, math.Log(g.volume), g.periodic, nil, nil, 2, func(i int) *rand.Rand {
 		return random.New(seed, "bound", uint64(i)).Rand
 	})
 }

@@ -1,10 +1,8 @@
 package sampler
 
 import (
-	"cmp"
 	"fmt"
 	"math"
-	"slices"
 
 	"gonum.org/v1/gonum/integrate/quad"
 	"gonum.org/v1/gonum/mat"
@@ -219,13 +217,11 @@ func tricube(z float64) float64 {
 
 // newWindow takes in a share of the weight around offset 0.
 func newWindow(offset, weight []float64, at, share float64, periodic bool) (*window, error) {
-	order := make([]int, len(offset))
-	for i := range order {
-		order[i] = i
+	away := make([]float64, len(offset))
+	for i, x := range offset {
+		away[i] = math.Abs(x)
 	}
-	slices.SortStableFunc(order, func(i, j int) int {
-		return cmp.Compare(math.Abs(offset[i]), math.Abs(offset[j]))
-	})
+	order := rising(away)
 	w := &window{}
 	var sum float64
 	for _, i := range order {

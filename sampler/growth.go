@@ -87,7 +87,7 @@ func (s Settings) additions(o *Outcome) (paths []*path, limited bool) {
 			peak = max(peak, more[j])
 		}
 	}
-	chunk := max(s.LivePoints, DefaultLivePoints)
+	chunk := s.companions()
 	count := (peak + chunk - 1) / chunk
 	for i := range count {
 		paths = append(paths, s.path(g, more, i, count))

@@ -168,7 +168,7 @@ func TestLiftedBoundCoversBothImages(t *testing.T) {
 				rng := random.New(seed, g.name).Rand
 				points := g.draw(rng, n)
 				fit := func(reflective []bool) *bound {
-					return newBound(points, g.dim, math.Log(g.volume), g.periodic, reflective, nil, 2, func(i int) *rand.Rand {
+					return newBound(nil, points, g.dim, math.Log(g.volume), g.periodic, reflective, nil, 2, func(i int) *rand.Rand {
 						return random.New(seed, "bound", uint64(i)).Rand
 					})
 				}
@@ -265,7 +265,7 @@ func TestMemorySeesThroughTheLift(t *testing.T) {
 	for range n {
 		st.u = append(st.u, 0.1*math.Abs(rng.NormFloat64()), 0.5+0.1*rng.NormFloat64())
 	}
-	b := newBound(st.u, dim, math.Inf(-1), nil, []bool{true, false}, nil, 1, func(i int) *rand.Rand { return random.New(1, "bound", uint64(i)).Rand })
+	b := newBound(nil, st.u, dim, math.Inf(-1), nil, []bool{true, false}, nil, 1, func(i int) *rand.Rand { return random.New(1, "bound", uint64(i)).Rand })
 	if b.frame.wall == nil {
 		t.Fatal("not lifted")
 	}

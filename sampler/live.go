@@ -1,10 +1,6 @@
 package sampler
 
-import (
-	"cmp"
-	"math"
-	"slices"
-)
+import "math"
 
 // bury moves the k lowest known live points to the dead ones, with the live
 // numbers n, n-1, ..., n-k+1 of those known.
@@ -67,21 +63,14 @@ func (r *runner) finish() *Outcome {
 		o.note("slices of %.0f steps still remember their start (covariance of first and last place %.2f of the live points' own): use more live points and compare", mostSteps*m.least, m.peak)
 	}
 	n := len(o.LogLikelihood)
-	order := make([]int, n)
-	for i := range order {
-		order[i] = i
-	}
-	slices.SortFunc(order, func(a, b int) int {
-		return cmp.Or(cmp.Compare(o.LogLikelihood[a], o.LogLikelihood[b]), cmp.Compare(a, b))
-	})
 	l, birth, strand := o.LogLikelihood, o.Birth, o.Strand
 	o.LogLikelihood, o.Birth, o.Strand = make([]float64, n), make([]float64, n), make([]int32, n)
 	flat := make([]float64, n*r.dim)
 	o.Points = make([][]float64, n)
-	for at, i := range order {
+	for at, i := range rising(l) {
 		o.LogLikelihood[at], o.Birth[at], o.Strand[at] = l[i], birth[i], strand[i]
 		o.Points[at] = flat[at*r.dim : (at+1)*r.dim : (at+1)*r.dim]
-		copy(o.Points[at], r.flat[i*r.dim:(i+1)*r.dim])
+		copy(o.Points[at], r.flat[int(i)*r.dim:(int(i)+1)*r.dim])
 	}
 	o.LiveCount = liveCounts(o.LogLikelihood, o.Birth)
 	for m, p := range r.phase {

@@ -32,12 +32,7 @@ type companions struct {
 func newCompanions(parts []*Outcome, rng *random.Rand) *companions {
 	c := &companions{parts: slices.Clone(parts), born: make([]int, len(parts)), alive: make([][]int32, len(parts))}
 	for _, o := range parts {
-		order := make([]int32, len(o.Birth))
-		for i := range order {
-			order[i] = int32(i)
-		}
-		slices.SortStableFunc(order, func(a, b int32) int { return cmp.Compare(o.Birth[a], o.Birth[b]) })
-		c.order = append(c.order, order)
+		c.order = append(c.order, rising(o.Birth))
 		lot := make([]float64, len(o.Birth))
 		for i := range lot {
 			lot[i] = rng.Float64()
@@ -126,7 +121,8 @@ func upTo(l, threshold float64) int {
 	return 1
 }
 
-// companions is the number of them that bounds are fitted to.
+// companions is the number of them that bounds are fitted to, and the most strands
+// of one addition.
 func (s Settings) companions() int { return max(s.LivePoints, DefaultLivePoints) }
 
 // overdue reports whether the oldest flight has been in the air for as much

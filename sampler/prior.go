@@ -1,11 +1,9 @@
 package sampler
 
 import (
-	"cmp"
 	"context"
 	"fmt"
 	"math"
-	"slices"
 
 	"knell/internal/random"
 )
@@ -85,16 +83,11 @@ func (r *runner) sorted() error {
 		o.openEnded = len(r.l) == n
 		r.logX = o.priorShrinkage().mean
 	}
-	order := make([]int, len(r.l))
-	for i := range order {
-		order[i] = i
-	}
 	u, l := r.u, r.l
-	slices.SortStableFunc(order, func(a, b int) int { return cmp.Compare(l[a], l[b]) })
 	r.flat = make([]float64, 0, usualDepth*len(l)*r.dim)
 	r.u, r.l = make([]float64, 0, len(u)), make([]float64, 0, len(l))
-	for _, i := range order {
-		r.u = append(r.u, u[i*r.dim:(i+1)*r.dim]...)
+	for _, i := range rising(l) {
+		r.u = append(r.u, u[int(i)*r.dim:(int(i)+1)*r.dim]...)
 		r.l = append(r.l, l[i])
 		r.birth = append(r.birth, math.Inf(-1))
 		r.strand = append(r.strand, r.strands)

@@ -40,7 +40,6 @@ func Run(ctx context.Context, newTarget func() (Target, error), s Settings) (*Ou
 	g.crew = newCrew(ctx, p)
 	defer func() { cancel(); g.crew.stop() }()
 	if r := g.current; r != nil { // what was in flight is drawn again
-		r.crew = g.crew
 		for _, f := range r.flights {
 			r.launch(f)
 		}
@@ -195,10 +194,8 @@ func (g *growing) interrupted(err error) (*Outcome, error) {
 			return nil, err
 		}
 	} else {
-		left := r.remaining()
-		base := r.path == nil
-		if base {
-			r.out.note("interrupted with ln(1 + Z'/Z) = %.3g nat remaining, %.3g wanted", left, g.set.Remaining)
+		if r.path == nil {
+			r.out.note("interrupted with ln(1 + Z'/Z) = %.3g nat remaining, %.3g wanted", r.remaining(), g.set.Remaining)
 		}
 		if part := r.finish(); len(part.Points) > 0 {
 			g.parts = append(g.parts, part)
@@ -210,10 +207,11 @@ func (g *growing) interrupted(err error) (*Outcome, error) {
 	}
 	g.whole = whole
 	whole.Status, whole.Partial = Interrupted, true
-	if r.path != nil {
+	if r.path == nil {
+		whole.judge()
+	} else {
 		g.missed(Interrupted, "interrupted")
 	}
-	whole.judge()
 	return whole, nil
 }
 

@@ -16,7 +16,6 @@ import (
 // what comes next follows from it alone.
 type runner struct {
 	of     *growing
-	crew   *crew
 	set    Settings
 	dim    int
 	run    uint64 // number of the part, from 0
@@ -64,7 +63,7 @@ type runner struct {
 func newRunner(g *growing, path *path) *runner {
 	s, dim := g.set, g.pool.dim
 	r := &runner{
-		of: g, crew: g.crew, set: s, dim: dim, run: uint64(len(g.parts)), before: g.calls(), path: path,
+		of: g, set: s, dim: dim, run: uint64(len(g.parts)), before: g.calls(), path: path,
 		out:        &Outcome{seed: s.Seed, periodic: s.Periodic},
 		logZ:       math.Inf(-1),
 		threshold:  math.Inf(-1),
@@ -95,14 +94,14 @@ func (r *runner) step(ctx context.Context) (bool, error) {
 	case r.ending:
 		return false, nil
 	case r.path == nil:
-		return true, r.next(ctx)
+		return true, r.next()
 	}
 	r.follow()
 	return true, nil
 }
 
 // next removes the lowest live points and sends a batch to replace them.
-func (r *runner) next(ctx context.Context) error {
+func (r *runner) next() error {
 	if r.remaining() < r.set.Remaining {
 		r.ending = true
 		return nil

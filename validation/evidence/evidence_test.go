@@ -35,8 +35,8 @@ func TestShortTable(t *testing.T) {
 	args := "--problems gaussian,shells,eggbox,half-plateau,mostly-zero,tiers,hypercube,two-modes,ridge --dims 2,3 --seeds 12 --live 150 --seed 5"
 	status := run(context.Background(), strings.Fields(args), &out, io.Discard)
 	t.Logf("\n%s", out.String())
-	if status != passed {
-		t.Errorf("status %d, want %d", status, passed)
+	if status != trials.Passed {
+		t.Errorf("status %d, want %d", status, trials.Passed)
 	}
 }
 
@@ -132,8 +132,8 @@ func TestInterruptPrintsWhatIsDone(t *testing.T) {
 	var out bytes.Buffer
 	errs := &cancelling{text: "gaussian/2: 4 of 4 runs", cancel: cancel}
 	status := run(ctx, strings.Fields("--problems gaussian,ridge --dims 2,8 --seeds 4 --live 64 --json --workers 2"), &out, errs)
-	if status != interrupted {
-		t.Errorf("status %d, want %d", status, interrupted)
+	if status != trials.Interrupted {
+		t.Errorf("status %d, want %d", status, trials.Interrupted)
 	}
 	var d document
 	if err := json.Unmarshal(out.Bytes(), &d); err != nil {
@@ -162,8 +162,8 @@ func TestSignalEndsCleanly(t *testing.T) {
 	cmd.Stdout = &out
 	cmd.Stderr = &cancelling{text: "gaussian/2: 3 of 3 runs", cancel: func() { _ = cmd.Process.Signal(os.Interrupt) }}
 	err := cmd.Run()
-	if cmd.ProcessState.ExitCode() != interrupted {
-		t.Errorf("ended with %v, want status %d", err, interrupted)
+	if cmd.ProcessState.ExitCode() != trials.Interrupted {
+		t.Errorf("ended with %v, want status %d", err, trials.Interrupted)
 	}
 	for _, s := range []string{"INTERRUPTED", "gaussian    2", "runs to judge by: 0"} {
 		if !strings.Contains(out.String(), s) {
@@ -178,8 +178,8 @@ func TestRowsPrintAsTheyComplete(t *testing.T) {
 	defer cancel()
 	out := &cancelling{text: "gaussian    2     4   -1.3863", cancel: cancel}
 	status := run(ctx, strings.Fields("--problems gaussian --dims 2,16 --seeds 4 --live 100 --workers 2"), out, io.Discard)
-	if status != interrupted || !strings.Contains(out.seen.String(), "INTERRUPTED") {
-		t.Errorf("status %d, want %d\n%s", status, interrupted, out.seen.String())
+	if status != trials.Interrupted || !strings.Contains(out.seen.String(), "INTERRUPTED") {
+		t.Errorf("status %d, want %d\n%s", status, trials.Interrupted, out.seen.String())
 	}
 	if !strings.Contains(out.seen.String(), "gaussian   16     0  -11.0904") {
 		t.Errorf("the row of 2 dimensions came after runs in 16:\n%s", out.seen.String())

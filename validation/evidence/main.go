@@ -22,20 +22,10 @@ package main
 
 import (
 	"context"
-	"errors"
-	"flag"
 	"fmt"
 	"io"
 
 	"knell/validation/trials"
-)
-
-// Exit statuses.
-const (
-	passed      = 0
-	failed      = 1
-	badUsage    = 2
-	interrupted = 130
 )
 
 func main() { trials.Main(run) }
@@ -43,20 +33,16 @@ func main() { trials.Main(run) }
 // run is the whole command, returning its exit status.
 func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 	o, err := parse(args, stderr)
-	switch {
-	case errors.Is(err, flag.ErrHelp):
-		return passed
-	case err != nil:
-		fmt.Fprintf(stderr, "evidence: %v\n", err)
-		return badUsage
+	if err != nil {
+		return trials.Unusable("evidence", err, stderr)
 	}
 	cases, err := trials.All(ctx, o.chosen)
 	if err != nil {
 		if ctx.Err() != nil {
-			return interrupted
+			return trials.Interrupted
 		}
 		fmt.Fprintf(stderr, "evidence: %v\n", err)
-		return failed
+		return trials.Failed
 	}
 	var (
 		rows []row
@@ -80,15 +66,15 @@ func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 	}
 	if err != nil {
 		fmt.Fprintf(stderr, "evidence: %v\n", err)
-		return failed
+		return trials.Failed
 	}
 	if ctx.Err() != nil {
-		return interrupted
+		return trials.Interrupted
 	}
 	for _, r := range rows {
 		if len(r.Faults) > 0 {
-			return failed
+			return trials.Failed
 		}
 	}
-	return passed
+	return trials.Passed
 }

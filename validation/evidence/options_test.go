@@ -37,8 +37,8 @@ func TestBadOptions(t *testing.T) {
 	} {
 		t.Run(tc.args, func(t *testing.T) {
 			var out, errs bytes.Buffer
-			if status := run(context.Background(), strings.Fields(tc.args), &out, &errs); status != badUsage {
-				t.Errorf("status %d, want %d", status, badUsage)
+			if status := run(context.Background(), strings.Fields(tc.args), &out, &errs); status != trials.BadUsage {
+				t.Errorf("status %d, want %d", status, trials.BadUsage)
 			}
 			for _, s := range tc.says {
 				if !strings.Contains(errs.String(), s) {
@@ -54,8 +54,8 @@ func TestBadOptions(t *testing.T) {
 
 func TestHelp(t *testing.T) {
 	var out, errs bytes.Buffer
-	if status := run(context.Background(), []string{"--help"}, &out, &errs); status != passed {
-		t.Errorf("status %d, want %d", status, passed)
+	if status := run(context.Background(), []string{"--help"}, &out, &errs); status != trials.Passed {
+		t.Errorf("status %d, want %d", status, trials.Passed)
 	}
 	for _, f := range trials.Families() {
 		if !strings.Contains(errs.String(), "  "+f.Name+" ") {

@@ -8,6 +8,8 @@ import (
 	"math"
 	"strings"
 	"testing"
+
+	"knell/validation/trials"
 )
 
 func documentOf(t *testing.T, args string) document {
@@ -94,8 +96,8 @@ func TestTable(t *testing.T) {
 func TestInterrupt(t *testing.T) {
 	ctx, cancel := context.WithCancel(context.Background())
 	cancel()
-	if status := run(ctx, strings.Fields("--use posterior --seeds 2"), io.Discard, io.Discard); status != interrupted {
-		t.Errorf("status %d, want %d", status, interrupted)
+	if status := run(ctx, strings.Fields("--use posterior --seeds 2"), io.Discard, io.Discard); status != trials.Interrupted {
+		t.Errorf("status %d, want %d", status, trials.Interrupted)
 	}
 }
 
@@ -117,8 +119,8 @@ func TestBadOptions(t *testing.T) {
 		{"gaussian", []string{`"gaussian"`, "options"}},
 	} {
 		var out, errs bytes.Buffer
-		if status := run(context.Background(), strings.Fields(tc.args), &out, &errs); status != badUsage {
-			t.Errorf("%s: status %d, want %d", tc.args, status, badUsage)
+		if status := run(context.Background(), strings.Fields(tc.args), &out, &errs); status != trials.BadUsage {
+			t.Errorf("%s: status %d, want %d", tc.args, status, trials.BadUsage)
 		}
 		for _, s := range tc.says {
 			if !strings.Contains(errs.String(), s) {

@@ -19,8 +19,6 @@ package main
 
 import (
 	"context"
-	"errors"
-	"flag"
 	"fmt"
 	"io"
 
@@ -28,31 +26,19 @@ import (
 	"knell/validation/trials"
 )
 
-// Exit statuses.
-const (
-	done        = 0
-	failed      = 1
-	badUsage    = 2
-	interrupted = 130
-)
-
 func main() { trials.Main(run) }
 
 // run is the whole command, returning its exit status.
 func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 	o, err := parse(args, stderr)
-	switch {
-	case errors.Is(err, flag.ErrHelp):
-		return done
-	case err != nil:
-		fmt.Fprintf(stderr, "timing: %v\n", err)
-		return badUsage
+	if err != nil {
+		return trials.Unusable("timing", err, stderr)
 	}
 	status := report.NewStatusLine(stderr)
 	d, err := measure(ctx, o, &status)
 	status.Clear()
 	if err != nil {
-		return interrupted
+		return trials.Interrupted
 	}
 	write := writeTable
 	if o.json {
@@ -60,7 +46,7 @@ func run(ctx context.Context, args []string, stdout, stderr io.Writer) int {
 	}
 	if err := write(stdout, d); err != nil {
 		fmt.Fprintf(stderr, "timing: %v\n", err)
-		return failed
+		return trials.Failed
 	}
-	return done
+	return trials.Passed
 }

@@ -7,14 +7,16 @@ import (
 	"io"
 	"strings"
 	"testing"
+
+	"knell/validation/trials"
 )
 
 const short = "--live 200,400 --workers 2,8 --calls 1,3 --nats 3 "
 
 func TestTable(t *testing.T) {
 	var out bytes.Buffer
-	if status := run(context.Background(), strings.Fields(short), &out, io.Discard); status != done {
-		t.Fatalf("status %d, want %d", status, done)
+	if status := run(context.Background(), strings.Fields(short), &out, io.Discard); status != trials.Passed {
+		t.Fatalf("status %d, want %d", status, trials.Passed)
 	}
 	for _, s := range []string{"\n200 live points\n", "\n400 live points\n", "live points for an efficiency of 90 %", "3 calls on average, rejection", "1 per batch slow", "one threshold: law"} {
 		if !strings.Contains(out.String(), s) {
@@ -72,8 +74,8 @@ func TestBadOptions(t *testing.T) {
 		{"500", []string{`"500"`, "options"}},
 	} {
 		var out, errs bytes.Buffer
-		if status := run(context.Background(), strings.Fields(tc.args), &out, &errs); status != badUsage {
-			t.Errorf("%s: status %d, want %d", tc.args, status, badUsage)
+		if status := run(context.Background(), strings.Fields(tc.args), &out, &errs); status != trials.BadUsage {
+			t.Errorf("%s: status %d, want %d", tc.args, status, trials.BadUsage)
 		}
 		for _, s := range tc.says {
 			if !strings.Contains(errs.String(), s) {
@@ -90,7 +92,7 @@ func TestInterrupt(t *testing.T) {
 	ctx, cancel := context.WithCancel(context.Background())
 	cancel()
 	var out bytes.Buffer
-	if status := run(ctx, strings.Fields(short), &out, io.Discard); status != interrupted || out.Len() > 0 {
-		t.Errorf("status %d with output %q, want %d with none", status, out.String(), interrupted)
+	if status := run(ctx, strings.Fields(short), &out, io.Discard); status != trials.Interrupted || out.Len() > 0 {
+		t.Errorf("status %d with output %q, want %d with none", status, out.String(), trials.Interrupted)
 	}
 }
